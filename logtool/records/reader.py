@@ -1,0 +1,314 @@
+"""Open logs: find the files, look them over, and make the tally and the ledger on first use."""
+
+from __future__ import annotations
+
+import os
+import tempfile
+import threading
+from collections import defaultdict
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+from itertools import pairwise
+from pathlib import Path
+from types import TracebackType
+from typing import TYPE_CHECKING
+
+from logtool.records.engine import connect, lines_sql
+from logtool.records.ledger import FileLedger
+from logtool.records.scan import Scan, ScanOptions, scan
+from logtool.records.sources import sources_of
+from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
+
+if TYPE_CHECKING:
+    import duckdb
+
+_POLL_S = 0.2  # between two looks at the engine's progress
+_LOOK_SHARE = 0.2  # of the time of reading, about, goes into looking over the bytes
+
+Progress = Callable[[str, float], None]  # told what is being done, and the share done
+
+
+@dataclass(frozen=True)
+class Setup:
+    """A setup in force from `time_us` on: where the receiver stands, its antenna and its dial."""
+
+    receiver: str
+    time_us: int
+    locator: str
+    antenna: str
+    dial_hz: int
+
+
+@dataclass(frozen=True)
+class OpenOptions:
+    """How logs are opened beside their places: threads, memory, digests, strangers, progress."""
+
+    threads: int | None = None
+    memory_mb: int | None = None
+    with_digest: bool = True
+    anyway: bool = False
+    progress: Progress | None = None
+
+
+class Logs:
+    """Opened logs; use with `with`, or `close` them. Made by `logtool.open_logs`.
+
+    Attributes
+    ----------
+    setups : dict
+        The setups of each receiver in the order of time; of two at one time the later read.
+    refused : list of str
+        The files that were not read, each with the reason.
+    notes : list of str
+        What a user should know of the reading.
+    """
+
+    def __init__(
+        self,
+        paths: tuple[str | os.PathLike[str], ...],
+        *,
+        at: str | None = None,
+        antenna_name: str | None = None,
+        options: OpenOptions = OpenOptions(),
+    ) -> None:
+        self.at = at
+        self.antenna_name = antenna_name
+        self._options = options
+        self._folder = tempfile.TemporaryDirectory(prefix="logtool-", ignore_cleanup_errors=True)
+        self._connection: duckdb.DuckDBPyConnection | None = None
+        self._bounds: frozenset[int] | None = None
+        self._ledger: list[FileLedger] | None = None
+        self._odd: list[Odd] = []
+        self.refused: list[str] = []
+        self.notes: list[str] = []
+        try:
+            self._scans = self._look_over(paths)
+            self.setups = _setups(self._scans)
+        except BaseException:
+            self.close()
+            raise
+
+    def __enter__(self) -> Logs:
+        return self
+
+    def __exit__(
+        self, kind: type[BaseException] | None, value: BaseException | None, trace: TracebackType | None
+    ) -> None:
+        self.close()
+
+    def close(self) -> None:
+        """Close the engine and remove what was copied; twice does no harm."""
+        if self._connection is not None:
+            self._connection.close()
+            self._connection = None
+        self._folder.cleanup()
+
+    @property
+    def connection(self) -> duckdb.DuckDBPyConnection:
+        """The engine's connection, opened on first use."""
+        if self._connection is None:
+            self._connection = connect(
+                Path(self._folder.name), self._options.threads, self._options.memory_mb
+            )
+        return self._connection
+
+    @property
+    def lines(self) -> str:
+        """SQL of the relation of `file` and `line` over all files, empty lines left out."""
+        return lines_sql([scan.path for scan in self._scans])
+
+    @property
+    def file_names(self) -> list[str]:
+        """The names of the files as given, by the index `file`."""
+        return [scan.source.name for scan in self._scans]
+
+    @property
+    def inputs(self) -> list[FileLedger]:
+        """The ledger of each file that was read."""
+        self.tally()
+        assert self._ledger is not None
+        return self._ledger
+
+    @property
+    def paths(self) -> list[Path]:
+        """Where the text of each file can be read again, line numbers unchanged."""
+        return [scan.path for scan in self._scans]
+
+    def tally(self, bounds: Iterable[int] = ()) -> None:
+        """Make the tables `tally` and `odd_records`, unless they are there and cut at the bounds.
+
+        Parameters
+        ----------
+        bounds : iterable of int
+            Instants (microseconds since 1970) that cut their hours in two.
+        """
+        inner = frozenset(bound for bound in bounds if bound % HOUR_US)
+        if self._bounds is not None and inner <= self._bounds:
+            return
+        self._bounds = inner
+        self._make_tally()
+        grown = [i for i, scan in enumerate(self._scans) if _has_changed(scan)]
+        if grown:
+            for i in grown:
+                self._copy_as_seen(i)
+            self._make_tally()
+
+    def set_aside(self) -> list[tuple[str, int, str, bytes]]:
+        """Return the file, line number, reason and bytes of every line set aside, in that order."""
+        from logtool.records.locate import line_numbers
+
+        self.tally()
+        wanted: dict[int, dict[bytes, str]] = defaultdict(dict)
+        for odd in self._odd:
+            if odd.why not in (BLANK, COMMENT):
+                wanted[odd.file][odd.line.encode()] = odd.why
+        found = [
+            (i, number, reason, line)
+            for i, scan in enumerate(self._scans)
+            for number, reason, line in scan.set_aside
+        ]
+        for i, reasons in wanted.items():
+            found += [(i, n, reasons[line], line) for n, line in line_numbers(self._scans[i].path, reasons)]
+        return [(self.file_names[i], n, reason, line) for i, n, reason, line in sorted(found)]
+
+    def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:
+        sources = sources_of(paths)
+        sizes = [source.path.stat().st_size if source.path else 0 for source in sources]
+        done, whole = 0, max(1, sum(sizes))
+
+        def told(file_bytes: int) -> None:
+            self._tell("looking over the files", _LOOK_SHARE * min(1, (done + file_bytes) / whole))
+
+        options = ScanOptions(self._options.with_digest, self._options.anyway, told)
+        scans: list[Scan] = []
+        for source, size in zip(sources, sizes, strict=True):
+            seen = scan(source, self._path_of(len(scans)), options)
+            done += size
+            if seen.refused:
+                self.refused.append(f"{source.name}: {seen.refused}")
+                seen.path.unlink(missing_ok=True)
+                continue
+            if seen.broken:
+                self.notes.append(f"{source.name}: read up to a break: {seen.broken}")
+            scans.append(seen)
+        return scans
+
+    def _path_of(self, index: int, again: str = "") -> Path:
+        folder = Path(self._folder.name) / f"text{again}"
+        folder.mkdir(exist_ok=True)
+        return folder / f"{index:08d}"
+
+    def _copy_as_seen(self, index: int) -> None:
+        seen = self._scans[index]
+        options = ScanOptions(self._options.with_digest, self._options.anyway)
+        self._scans[index] = scan(
+            seen.source, self._path_of(index, "-as-seen"), options, only_bytes=seen.stored_bytes
+        )
+
+    def _make_tally(self) -> None:
+        cuts = Cuts(self._make_cuts(), tuple(sorted(self._bounds or ())))
+        with _Polled(self.connection, self._options.progress):
+            self._odd = create_tally(self.connection, self.lines, cuts=cuts)
+            repeats = drop_repeated(self.connection, cuts=cuts)
+        self._ledger = self._count(repeats)
+        self._tell("", 1)
+
+    def _make_cuts(self) -> bool:
+        """Make the table of the pieces of hours that setups cut; return whether there are any."""
+        rows = []
+        for receiver, setups in self.setups.items():
+            for setup, following in pairwise([*setups, None]):
+                assert setup is not None
+                hour = setup.time_us // HOUR_US
+                if setup.time_us % HOUR_US:
+                    end = (hour + 1) * HOUR_US
+                    stop = end if following is None else min(end, following.time_us)
+                    rows.append([receiver, hour, setup.time_us, stop])
+        self.connection.execute(
+            "CREATE OR REPLACE TABLE cuts (receiver VARCHAR, hour BIGINT, start_us BIGINT, stop_us BIGINT)"
+        )
+        if rows:
+            columns = [list(column) for column in zip(*rows, strict=True)]
+            self.connection.execute(
+                "INSERT INTO cuts SELECT unnest(?::VARCHAR[]), unnest(?::BIGINT[]), unnest(?::BIGINT[]),"
+                " unnest(?::BIGINT[])",
+                columns,
+            )
+        return bool(rows)
+
+    def _count(self, repeats: list[Repeats]) -> list[FileLedger]:
+        ledger = []
+        for seen in self._scans:
+            file = FileLedger(seen.source.name, seen.digest, seen.stored_bytes, seen.lines)
+            file.blank, file.comments = seen.blank, seen.comments
+            file.reasons.update(reason for _, reason, _ in seen.set_aside)
+            ledger.append(file)
+        kept = self.connection.execute("""
+            SELECT file, sum(n)::BIGINT FROM (
+                SELECT file, n FROM tally UNION ALL SELECT file, 1 FROM odd_records)
+            GROUP BY file""").fetchall()
+        for i, records in kept:
+            ledger[i].records = records
+        for i, count in repeats:
+            ledger[i].repeated += count
+        for odd in self._odd:
+            if odd.why == COMMENT:
+                ledger[odd.file].comments += odd.count
+            elif odd.why != BLANK:
+                ledger[odd.file].reasons[odd.why] += odd.count
+        for file in ledger:
+            file.blank = file.lines - file.comments - file.records - file.repeated - file.set_aside
+        return ledger
+
+    def _tell(self, what: str, share: float) -> None:
+        if self._options.progress is not None:
+            self._options.progress(what, share)
+
+
+class _Polled:
+    """While it is entered, ask the engine from a thread how far it is, and tell the progress."""
+
+    def __init__(self, connection: duckdb.DuckDBPyConnection, progress: Progress | None) -> None:
+        self._connection = connection
+        self._progress = progress
+        self._done = threading.Event()
+        self._thread = threading.Thread(target=self._poll, daemon=True)
+
+    def __enter__(self) -> None:
+        if self._progress is not None:
+            self._thread.start()
+
+    def __exit__(self, *_: object) -> None:
+        self._done.set()
+        if self._progress is not None:
+            self._thread.join()
+
+    def _poll(self) -> None:
+        assert self._progress is not None
+        while not self._done.wait(_POLL_S):
+            percent = self._connection.query_progress()
+            if percent >= 0:
+                self._progress("reading", _LOOK_SHARE + (1 - _LOOK_SHARE) * percent / 100)
+
+
+def _has_changed(seen: Scan) -> bool:
+    """Return whether a file that is read where it is has another size than when it was looked over."""
+    return not seen.copied and seen.path.stat().st_size != seen.stored_bytes
+
+
+def _setups(scans: list[Scan]) -> dict[str, list[Setup]]:
+    latest: dict[tuple[str, int], Setup] = {}
+    for seen in scans:
+        for _, record in seen.setups:
+            receiver = record.field("receiver")
+            latest[receiver, record.time_us] = Setup(
+                receiver,
+                record.time_us,
+                record.field("locator"),
+                record.keys["antenna"],
+                int(record.field("dial_hz")),
+            )
+    setups: dict[str, list[Setup]] = {}
+    for key in sorted(latest):
+        setups.setdefault(key[0], []).append(latest[key])
+    return setups
