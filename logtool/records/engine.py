@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from logtool.records.layout import MAX_LINE_BYTES
 from logtool.records.quick import sql_text
@@ -50,3 +51,19 @@ def lines_sql(paths: list[Path]) -> str:
     if len(paths) == 1:
         return f"(SELECT {int(paths[0].name)}::INTEGER AS file, coalesce(line, {_NULL}) AS line FROM {read}))"
     return f"(SELECT right(filename, 8)::INTEGER AS file, coalesce(line, {_NULL}) AS line FROM {read}, filename=true))"
+
+
+def create_table(
+    connection: duckdb.DuckDBPyConnection, name: str, columns: dict[str, str], values: Sequence[Sequence[Any]]
+) -> None:
+    """Make a table of the columns (name to type) from one sequence of values a column."""
+    declared = ", ".join(f"{column} {kind}" for column, kind in columns.items())
+    connection.execute(f"CREATE OR REPLACE TEMP TABLE {name} ({declared})")
+    if values and len(values[0]):
+        unnested = ", ".join(f"unnest(?::{kind}[])" for kind in columns.values())
+        connection.execute(f"INSERT INTO {name} SELECT {unnested}", [list(column) for column in values])
+
+
+def among(column: str, words: Sequence[str]) -> str:
+    """Return the SQL condition that a column is one of the words."""
+    return f"{column} IN ({', '.join(sql_text(word) for word in words)})"

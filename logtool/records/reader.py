@@ -13,7 +13,7 @@ from pathlib import Path
 from types import TracebackType
 from typing import TYPE_CHECKING
 
-from logtool.records.engine import connect, lines_sql
+from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
 from logtool.records.scan import Scan, ScanOptions, scan
 from logtool.records.sources import sources_of
@@ -79,6 +79,8 @@ class Logs:
         self._bounds: frozenset[int] | None = None
         self._ledger: list[FileLedger] | None = None
         self._odd: list[Odd] = []
+        self.read_times = 0
+        self.rolled_up_for: tuple[int, float] | None = None
         self.refused: list[str] = []
         self.notes: list[str] = []
         try:
@@ -134,6 +136,11 @@ class Logs:
         """Where the text of each file can be read again, line numbers unchanged."""
         return [scan.path for scan in self._scans]
 
+    @property
+    def bounds(self) -> frozenset[int]:
+        """The instants (microseconds since 1970) at which the tally cuts hours."""
+        return self._bounds or frozenset()
+
     def tally(self, bounds: Iterable[int] = ()) -> None:
         """Make the tables `tally` and `odd_records`, unless they are there and cut at the bounds.
 
@@ -147,6 +154,7 @@ class Logs:
             return
         self._bounds = inner
         self._make_tally()
+        self.read_times += 1
         grown = [i for i, scan in enumerate(self._scans) if _has_changed(scan)]
         if grown:
             for i in grown:
@@ -224,16 +232,8 @@ class Logs:
                     end = (hour + 1) * HOUR_US
                     stop = end if following is None else min(end, following.time_us)
                     rows.append([receiver, hour, setup.time_us, stop])
-        self.connection.execute(
-            "CREATE OR REPLACE TABLE cuts (receiver VARCHAR, hour BIGINT, start_us BIGINT, stop_us BIGINT)"
-        )
-        if rows:
-            columns = [list(column) for column in zip(*rows, strict=True)]
-            self.connection.execute(
-                "INSERT INTO cuts SELECT unnest(?::VARCHAR[]), unnest(?::BIGINT[]), unnest(?::BIGINT[]),"
-                " unnest(?::BIGINT[])",
-                columns,
-            )
+        columns = {"receiver": "VARCHAR", "hour": "BIGINT", "start_us": "BIGINT", "stop_us": "BIGINT"}
+        create_table(self.connection, "cuts", columns, list(zip(*rows, strict=True)))
         return bool(rows)
 
     def _count(self, repeats: list[Repeats]) -> list[FileLedger]:
@@ -298,8 +298,12 @@ def _has_changed(seen: Scan) -> bool:
 
 def _setups(scans: list[Scan]) -> dict[str, list[Setup]]:
     latest: dict[tuple[str, int], Setup] = {}
+    known: set[tuple[str, ...]] = set()  # a repeated line is no later setup
     for seen in scans:
         for _, record in seen.setups:
+            if record.fields in known:
+                continue
+            known.add(record.fields)
             receiver = record.field("receiver")
             latest[receiver, record.time_us] = Setup(
                 receiver,

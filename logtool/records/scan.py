@@ -81,7 +81,7 @@ def scan(source: Source, path: Path, options: ScanOptions, *, only_bytes: int | 
     FileError
         Where the file cannot be read or the copy not be written.
     """
-    if source.path is not None and not source.packing and only_bytes is None:
+    if source.path is not None and source.path.is_file() and not source.packing and only_bytes is None:
         found = _look(Scan(source, path, copied=False), Text(source), options, None)
         if found is not None:
             if not found.refused:
@@ -90,6 +90,7 @@ def scan(source: Source, path: Path, options: ScanOptions, *, only_bytes: int | 
     found = Scan(source, path, copied=True)
     try:
         with path.open("wb") as copy:
+            copy.write(BOM)  # the engine drops one, so that a second one in the file stays in its line
             _look(found, Text(source, limit=only_bytes), options, copy)
     except OSError as error:
         raise FileError(
@@ -219,7 +220,7 @@ def _taken_out(found: Scan, block: bytes) -> bytes:
     stops = np.concatenate((starts[1:], [len(block)]))
     spots = [match.start() for match in _LINE_BREAKER.finditer(block)] + _bad_utf8(block)
     taken = set((np.searchsorted(starts, spots, side="right") - 1).tolist())
-    taken |= set(np.flatnonzero(stops - starts > MAX_LINE_BYTES).tolist())
+    taken |= set(np.flatnonzero(stops - starts > MAX_LINE_BYTES + len(b"\r\n")).tolist())
     pieces = []
     kept_from = 0
     for i in sorted(taken):

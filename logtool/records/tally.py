@@ -27,8 +27,8 @@ _FIELDS = f"""epoch_us({_F["time"]}::TIMESTAMP) AS time_us, {_F["receiver"]} AS 
     {_F["dial_hz"]} AS dial_hz, {_F["mode"]} AS mode, {_F["sender"]} AS sender, {_F["locator"]} AS locator,
     nullif({_F["snr_db"]}, '')::DECIMAL(8, 6) AS snr_db"""
 _SPLIT = "string_split(line, chr(9))"
-# A group of the tally; `part` tells the pieces of an hour that a setup or a bound cuts.
-_KEYS = ("file", "hour", "part", "receiver", "dial_hz", "mode", "sender")
+# A group of the tally; `start_us` is the start of the hour, or of the piece of it after a cut.
+_KEYS = ("file", "start_us", "receiver", "dial_hz", "mode", "sender")
 _NAMES = ", ".join(_KEYS)
 _PLACED = f"length(locator) >= {OWN_LOCATOR_CHARACTERS}"
 _LOCATORS = f"list(locator) FILTER ({_PLACED})"
@@ -74,8 +74,7 @@ def create_tally(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cut
     Returns
     -------
     list of Odd
-        `tally` has the columns file, hour (since 1970), part (its start in microseconds or null),
-        receiver, dial_hz, mode, sender, n and the lists times (microseconds into the hour), snrs,
+        `tally` has the columns file, start_us (of the hour or the piece of it), receiver, dial_hz, mode, sender, n and the lists times (microseconds into the hour), snrs,
         placed (whether there is an own locator) and hashes (of the lines), all of n in one order, and
         locators (the own ones, in that order). `odd_records` (file, line, n) has the records that
         are not in it.
@@ -97,7 +96,7 @@ def create_tally(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cut
 
 def _fields_sql(source: str, *, cuts: Cuts) -> str:
     """Return the SQL that reads the fields `f` of a relation and puts each line into its group."""
-    pieces, join = ["NULL::BIGINT"], ""
+    pieces, join = [f"time_us // {HOUR_US} * {HOUR_US}"], ""
     if cuts.by_setups:
         pieces.append("cuts.start_us")
         join = f"""LEFT JOIN cuts ON cuts.receiver = fields.receiver AND cuts.hour = time_us // {HOUR_US}
@@ -106,7 +105,7 @@ def _fields_sql(source: str, *, cuts: Cuts) -> str:
         after = f"time_us >= {bound} AND time_us // {HOUR_US} = {bound // HOUR_US}"
         pieces.append(f"CASE WHEN {after} THEN {bound} END")
     return f"""
-        SELECT fields.*, time_us // {HOUR_US} AS hour, greatest({", ".join(pieces)}) AS part
+        SELECT fields.*, greatest({", ".join(pieces)}) AS start_us
         FROM (SELECT * EXCLUDE (f), {_FIELDS} FROM ({source})) AS fields {join}"""
 
 
@@ -139,7 +138,7 @@ def _judged(connection: duckdb.DuckDBPyConnection) -> list[Odd]:
 def drop_repeated(connection: duckdb.DuckDBPyConnection, *, cuts: Cuts) -> list[Repeats]:
     """Count each record once, charge the others to the later files and return how many those have.
 
-    Then the receptions among the odd records join the tally, and `hashes` and `placed` go. Two lines are
+    Then the receptions among the odd records move to the tally, and `hashes` and `placed` go. Two lines are
     taken as equal where their 64-bit hashes are: docs/methods.md#repeated-lines.
     """
     repeats = _drop_repeated_odd(connection)
@@ -156,6 +155,7 @@ def drop_repeated(connection: duckdb.DuckDBPyConnection, *, cuts: Cuts) -> list[
         f"INSERT INTO tally BY NAME SELECT {_NAMES}, {_LISTS}"
         f" FROM ({_fields_sql(heard, cuts=cuts)}) GROUP BY {_NAMES}"
     )
+    connection.execute(f"DELETE FROM odd_records WHERE {_SPLIT}[2] = 'heard'")
     return repeats
 
 

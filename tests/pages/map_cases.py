@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from datetime import UTC, datetime
 from string import ascii_uppercase
 
@@ -148,6 +149,32 @@ def around(
         notes=("invented data",),
         ledger=("night-1.log: 40000 lines, 39990 records, 10 set aside",),
         options=(("receiver", "all"),),
+    )
+
+
+def with_island(data: MapData, locator: str, shared: int) -> MapData:
+    """Return data with a second receiver, `island`, that heard the first `shared` senders in hour 3."""
+    group, heard, snr_db = [2] * shared, [4] * shared, [-3.0] * shared
+    counts, totals = data.counts, data.totals
+    return replace(
+        data,
+        receivers=(*data.receivers, MapReceiver("island", locator)),
+        groups=(*data.groups, MapGroup(1, "dipole", "40m", "M1")),
+        pairs=(*data.pairs, *(pair(i, 1, locator, data.senders[i].locator) for i in range(shared))),
+        hours=tuple(hour(i, 2) for i in range(len(data.hours))),
+        counts=MapCounts(
+            [*counts.sender, *range(shared)],
+            [*counts.group, *group],
+            [*counts.hour, *[3] * shared],
+            [*counts.receptions, *heard],
+            [*counts.snr_median_db, *snr_db],
+        ),
+        totals=MapTotals(
+            [*totals.sender, *range(shared)],
+            [*totals.group, *group],
+            [*totals.receptions, *heard],
+            [*totals.snr_median_db, *snr_db],
+        ),
     )
 
 

@@ -7,14 +7,18 @@ from typing import TypeVar
 
 import pytest
 from browser import Page
-from map_cases import small
-from map_window import choose, drawn, open_map, pixels, slide, text, toggle
+from map_cases import around, small, spread, with_island
+from map_window import choose, drawn, open_map, pixels, select, slide, text, toggle
 
 from logtool.pages.map_data import MapCounts, MapTotals
 
 pytestmark = pytest.mark.browser
 
 Columns = TypeVar("Columns", MapCounts, MapTotals)
+
+
+ALL_IN_VIEW = """logtoolMap.page.layer.scene.circles
+  .every(({ lat, lon }) => logtoolMap.page.map.getBounds().contains([lat, lon]))"""
 
 
 def with_row(columns: Columns, **row: float) -> Columns:
@@ -135,4 +139,21 @@ def test_snr_is_not_pooled_over_bands(page: Page, tmp_path: Path) -> None:
         is None
     )
     assert "noise in 2500 Hz" in text(page, "legend")
+    assert page.faults() == []
+
+
+def test_each_receiver_is_a_layer_with_its_own_middle(page: Page, tmp_path: Path) -> None:
+    open_map(page, tmp_path, with_island(around("JO74xa", spread(80), rows=300), "QF56", 30))
+    assert drawn(page) == "80"
+    choose(page, "receiver", "island")
+    assert drawn(page) == "30"
+    assert page.evaluate("logtoolMap.page.layer.scene.receivers.map((one) => one.name)") == ["island"]
+    # QF56 lies round 151 degrees east; its world reaches from 29 west to 331 east, all of it in view
+    assert page.evaluate("logtoolMap.page.layer.scene.span") == {"west": -29, "east": 331}
+    assert page.evaluate(ALL_IN_VIEW)
+    select(page, 0)
+    assert "At hut" in text(page, "sender")
+    assert "At island" in text(page, "sender")
+    choose(page, "receiver", "hut")
+    assert drawn(page) == "80"
     assert page.faults() == []

@@ -9,6 +9,7 @@ import pytest
 from browser import Page
 from map_cases import small
 from pyproj import Geod
+from test_map_style import EDGE_LIGHT, MARK_CONTRAST, colours, contrast
 
 from logtool.pages.map_page import map_html
 from logtool.places.geodesic import circle_points
@@ -185,6 +186,19 @@ def test_colours_are_even_and_run_one_way_in_lightness(geo: Page, theme: str, di
     assert np.ptp(lightness) > 0.3
     steps = np.linalg.norm(np.diff(lab, axis=0), axis=1)
     assert steps.max() / steps.min() < 1.35  # even but for the rounding to 8 bits, and corners at the anchors
+
+
+def test_circles_stand_out_from_land_and_sea(geo: Page) -> None:
+    for ground in ("sea", "land"):
+        known = colours("dark")[ground]
+        for colour in geo.evaluate("logtoolMap.ramp.colours('dark')"):
+            red, green, blue = (int(part) / 255 for part in colour[4:-1].split(","))
+            assert contrast((red, green, blue), known) >= MARK_CONTRAST
+        # in the light theme amber is as light as land, so the dark edge of each circle has to tell them apart
+        *edge, opacity = (float(part) for part in EDGE_LIGHT)
+        bright = colours("light")[ground]
+        red, green, blue = (opacity * e / 255 + (1 - opacity) * b for e, b in zip(edge, bright, strict=True))
+        assert contrast((red, green, blue), bright) >= MARK_CONTRAST
 
 
 def test_radius_gives_areas_by_receptions(geo: Page) -> None:

@@ -24,6 +24,8 @@ MARKS = (
     *((mark, "box") for mark in ("field", "accent")),
 )
 
+EDGE_LIGHT = re.findall(r"--edge: rgba\((.*?), (.*?), (.*?), (.*?)\)", STYLE)[0]
+
 Colour = tuple[float, float, float]
 
 

@@ -9,6 +9,7 @@ logtoolMap.start = (map) => {
   const root = document.documentElement;
   const json = (id) => JSON.parse(document.getElementById(id).textContent);
   const model = read(json("logtool-map-data"));
+  let framed = null; // the middle meridian of the world that the map was last fitted to
   const dark = window.matchMedia("(prefers-color-scheme: dark)");
 
   function scales() {
@@ -66,6 +67,7 @@ logtoolMap.start = (map) => {
 
     redraw() {
       page.layer.refresh();
+      if (page.layer.scene.centre !== framed) frame();
       controls.legend(page);
       controls.showHours(page);
       document.getElementById("drawn").textContent = drawnText();
@@ -122,13 +124,23 @@ logtoolMap.start = (map) => {
     map.on("mouseout", () => (box.hidden = true));
   }
 
+  // Zooming out ends where the whole world fits.
+  function limitZoom() {
+    const size = map.getSize();
+    map.setMinZoom(Math.floor(10 * Math.log2(Math.min(size.x / 512, size.y / (256 * geo.STRETCH)))) / 10);
+  }
+
+  // Show all that is drawn, with the first receiver's meridian in the middle of the world.
   function frame() {
     const { centre } = page.layer.scene, size = map.getSize();
-    map.setMinZoom(Math.floor(10 * Math.log2(Math.min(size.x / 512, size.y / (256 * geo.STRETCH)))) / 10);
+    framed = centre;
+    limitZoom();
     const zoom = Math.min(FIT.maxZoom, map.getBoundsZoom(page.layer.bounds(), false, FIT.padding));
     const middle = page.layer.bounds().getCenter();
     const half = size.y / 2 / (map.options.crs.scale(zoom) / 180 * geo.STRETCH); // of the map's height, in degrees
-    map.setView([Math.max(Math.min(half - 90, 0), Math.min(Math.max(90 - half, 0), middle.lat)), middle.lng], zoom, { animate: false });
+    const room = Math.max(0, 90 - half); // the map's middle stays this near the equator, so that no space is lost
+    map.setMaxBounds(null); // those of another receiver would hold the view back
+    map.setView([Math.max(-room, Math.min(room, middle.lat)), middle.lng], zoom, { animate: false });
     map.setMaxBounds([[-90 - MARGIN_DEG, centre - 180 - MARGIN_DEG], [90 + MARGIN_DEG, centre + 180 + MARGIN_DEG]]);
   }
 
@@ -148,7 +160,6 @@ logtoolMap.start = (map) => {
   page.shown = choice.placed(page.heard);
   page.layer = new Layer(page, geo.land(json("logtool-map-land")));
   page.layer.addTo(map);
-  frame();
   page.changed();
   tip();
 
@@ -163,6 +174,9 @@ logtoolMap.start = (map) => {
     page.themed();
     page.redraw();
   });
-  window.addEventListener("resize", page.redraw);
+  window.addEventListener("resize", () => {
+    limitZoom();
+    page.redraw();
+  });
   logtoolMap.page = page;
 };

@@ -119,5 +119,5 @@ logtoolMap.choice = (() => {
     return [...sets.values()].map((set) => set.size);
   }
 
-  return { ALL, CIRCLES, fresh, text, groupFits, receivers, hours, heard, placed, farthest, byHour, weightedMedian };
+  return { ALL, CIRCLES, fresh, text, receivers, hours, heard, placed, farthest, byHour, weightedMedian };
 })();

@@ -91,7 +91,7 @@ logtoolMap.layer = (() => {
     follow() {
       const corner = this._map.containerPointToLayerPoint([0, 0]);
       const gone = corner.subtract(this.corner);
-      
+      if (Math.abs(gone.x) > this.spare.x || Math.abs(gone.y) > this.spare.y) this.draw();
     },
 
     draw() {
