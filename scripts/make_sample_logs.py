@@ -59,7 +59,10 @@ HIGH_ANGLE_DB, HIGH_ANGLE_KM = 3.0, 800  # the dipole's gain for what comes from
 TAKEN_OFF_DB = -70.0  # what leaks in without an antenna
 OWN_NOISE_DBM, FULL_SCALE_DBM = -122.0, -52.0  # the receiver's own noise; the input that fills the converter
 HZ_PER_C, USUAL_C, CLOCK_S_PER_DAY = 2.8, 11.0, 0.045
-NETS = 0.5  # the share of general calls that are answered
+ANSWERED, THANKED, IN_THE_EVENING = 0.5, 0.15, 0.7  # shares: calls, conversations, senders
+PAUSE_SLOTS = (24, 200)  # of a sender between two calls or conversations: at least, and by chance
+MISSED = 0.04  # of the messages that are strong enough
+THANKS = ("TNX FER QSO GL 73 E E", "TNX 73 GN", "FB TNX GL", "WX RAIN 9C 73", "PSE QSL TNX")
 
 
 def at(day: int, hour: int, minute: int = 0, second: int = 0) -> int:
@@ -137,7 +140,8 @@ class Dice:
 
     def shares(self, n: int) -> FloatArray:
         """Return n numbers from 0 to under 1."""
-        return (self._bits.random_raw(n) >> np.uint64(11)) / float(1 << 53)
+        bits: NDArray[np.uint64] = self._raw(n) >> np.uint64(11)
+        return bits.astype(np.float64) / float(1 << 53)
 
     def share(self) -> float:
         """Return a number from 0 to under 1."""
@@ -145,7 +149,16 @@ class Dice:
 
     def normals(self, n: int) -> FloatArray:
         """Return n numbers, nearly normal (mean 0, deviation 1): twelve even ones added, which is exact."""
-        return self._bits.random_raw(3 * n).view(np.uint16).reshape(n, 12).sum(axis=1) / 65536.0 - 6.0
+        even = self._raw(3 * n).view(np.uint16).reshape(n, 12).sum(axis=1)
+        return even.astype(np.float64) / float(1 << 16) - 6.0
+
+    def call_sign(self) -> str:
+        """Return a call sign that nobody has: Q, a digit and two or three letters."""
+        letters = 2 + (self.below(4) > 0)
+        return f"Q{self.below(10)}" + "".join(chr(ord("A") + self.below(26)) for _ in range(letters))
+
+    def _raw(self, n: int) -> NDArray[np.uint64]:
+        return np.asarray(self._bits.random_raw(n), dtype=np.uint64)
 
 
 @dataclass(frozen=True)
@@ -187,33 +200,43 @@ class Entry:
 
 def invent_senders() -> list[Sender]:
     """Return the senders, each with a call sign of its own that begins with Q."""
-    dice, senders, calls = Dice(1), [], set()
+    dice = Dice(1)
+    senders: list[Sender] = []
+    calls: set[str] = set()
     lots = [box for box in BOXES for _ in range(box[4])]
     while len(senders) < SENDERS:
-        call = f"Q{dice.below(10)}" + "".join(
-            chr(65 + dice.below(26)) for _ in range(2 + (dice.below(4) > 0))
-        )
+        call = dice.call_sign()
         if call in calls:
             continue
         calls.add(call)
         south, north, west, east, _ = lots[dice.below(len(lots))]
         lat, lon = south + (north - south) * dice.share(), west + (east - west) * dice.share()
-        portable, a, b, c = dice.share() < PORTABLE, *dice.normals(3).tolist()
-        evening_h = 20 + 3.2 * a - lon / 15 if dice.share() < 0.7 else 24 * dice.share()
+        portable = dice.share() < PORTABLE
+        a, b, c, d = (float(x) for x in dice.normals(4))
+        evening_h = 20 + 3.2 * a - lon / 15 if dice.share() < IN_THE_EVENING else 24 * dice.share()
         senders.append(Sender(
             call=call + "/P" * portable, locator=locator_at(lat, lon, 4),
             power_dbm=float(round(37 if portable else min(50, max(30, 41 + 5 * b)))),
             aerial_db=round(-6 + 3 * c - 3 * portable, 3), audio_hz=float(150 + dice.below(2_600)),
-            clock_s=round(0.07 * float(dice.normals(1)[0]), 3), evening_s=round((evening_h - 12) * HOUR_S),
+            clock_s=round(0.07 * d, 3), evening_s=round((evening_h - 12) * HOUR_S),
             hours=2 + 4 * dice.share(), keen=0.35 + 0.6 * dice.share(), names_power=dice.share() < 0.12,
         ))  # fmt: skip
     return senders
 
 
+def on_the_way(share: float, arc: FloatArray, ends: tuple[FloatArray, FloatArray]) -> FloatArray:
+    """Return latitudes and longitudes at a share of the way from the site to the ends. [rad]"""
+    (lat, lon), home = ends, np.radians(centre(SITE))
+    near, far = np.sin((1 - share) * arc) / np.sin(arc), np.sin(share * arc) / np.sin(arc)
+    x = near * np.cos(home[0]) * np.cos(home[1]) + far * np.cos(lat) * np.cos(lon)
+    y = near * np.cos(home[0]) * np.sin(home[1]) + far * np.cos(lat) * np.sin(lon)
+    z = near * np.sin(home[0]) + far * np.sin(lat)
+    return np.array([np.arctan2(z, np.hypot(x, y)), np.arctan2(y, x)])
+
+
 def path_loss_db(senders: list[Sender]) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Return loss by sender and ten minutes of the week [dB], and the senders' distances and bearings."""
     lat, lon = np.radians(centres([sender.locator for sender in senders]))
-    home = np.radians(centre(SITE))
     lines = inverse(*centre(SITE), np.degrees(lat), np.degrees(lon))
     km = np.round(lines.distance_km, 1)
     hops = np.ceil(km / HOP_KM)
@@ -228,11 +251,7 @@ def path_loss_db(senders: list[Sender]) -> tuple[FloatArray, FloatArray, FloatAr
     bins_s = START.timestamp() + BIN_S * (np.arange(-4 * lag_bins, BINS) + 0.5)
     layer, absorbing = [], []
     for share in (0.1, 0.3, 0.5, 0.7, 0.9):
-        near, far = np.sin((1 - share) * arc) / np.sin(arc), np.sin(share * arc) / np.sin(arc)
-        x = near * np.cos(home[0]) * np.cos(home[1]) + far * np.cos(lat) * np.cos(lon)
-        y = near * np.cos(home[0]) * np.sin(home[1]) + far * np.cos(lat) * np.sin(lon)
-        z = near * np.sin(home[0]) + far * np.sin(lat)
-        place = np.degrees(np.arctan2(z, np.hypot(x, y))), np.degrees(np.arctan2(y, x))
+        place = np.degrees(on_the_way(share, arc, (lat, lon)))
         zenith = zenith_deg(bins_s[None, :], place[0][:, None], place[1][:, None])
         light = np.sqrt(np.maximum(0, np.cos(np.radians(zenith))))
         lagged = sum(w * light[:, (4 - k) * lag_bins : light.shape[1] - k * lag_bins]
@@ -260,7 +279,9 @@ def noise_dbm() -> FloatArray:
 
 def overs_of_week(senders: list[Sender]) -> list[Over]:
     """Return every message sent in the week: general calls, and conversations that alternate slots."""
-    dice, overs, on_air = Dice(3), [], [[] for _ in senders]
+    dice = Dice(3)
+    overs: list[Over] = []
+    on_air: list[list[tuple[int, int]]] = [[] for _ in senders]
     waiting: list[tuple[int, int]] = []
     for i, sender in enumerate(senders):
         for day in range(-1, NIGHTS + 1):
@@ -275,7 +296,7 @@ def overs_of_week(senders: list[Sender]) -> list[Over]:
         slot, i = heapq.heappop(waiting)
         if not any(first <= slot < last for first, last in on_air[i]):
             continue
-        pause = 24 + dice.below(200)
+        pause = PAUSE_SLOTS[0] + dice.below(PAUSE_SLOTS[1])
         if slot < free_from[i]:
             heapq.heappush(waiting, (free_from[i] + pause, i))
             continue
@@ -286,12 +307,10 @@ def overs_of_week(senders: list[Sender]) -> list[Over]:
         slot += 2 * calls - 1
         able = [j for j in range(len(senders)) if j != i and free_from[j] < slot
                 and any(first <= slot < last for first, last in on_air[j])]  # fmt: skip
-        if able and dice.share() < NETS:
+        if able and dice.share() < ANSWERED:
             j = able[dice.below(len(able))]
-            there, mine, theirs = (
-                senders[j].call,
-                *(max(-21, min(12, round(-7 + 6 * x))) for x in dice.normals(2)),
-            )
+            there = senders[j].call
+            mine, theirs = (max(-21, min(12, round(-7 + 6 * float(x)))) for x in dice.normals(2))
             said = [(j, i, f"{me.call} DE {there} RPT {mine}", mine),
                     (i, j, f"{there} DE {me.call} R RPT {theirs}", theirs),
                     (j, i, f"{me.call} DE {there} R TNX 73", None),
@@ -299,8 +318,8 @@ def overs_of_week(senders: list[Sender]) -> list[Over]:
             for k, (who, whom, text, report) in enumerate(said):
                 overs.append(Over(slot + k, who, whom, text, report))
             slot += len(said)
-            if dice.share() < 0.15:
-                overs.append(Over(slot, j, None, "TNX FER QSO GL 73 E E", named=False))
+            if dice.share() < THANKED:
+                overs.append(Over(slot, j, None, THANKS[dice.below(len(THANKS))], named=False))
             free_from[j] = slot + 2
         free_from[i] = slot + 2
         heapq.heappush(waiting, (slot + pause, i))
@@ -355,7 +374,7 @@ def receptions(senders: list[Sender], noise: FloatArray) -> list[Entry]:
     quick_db = 3.0 * dice.normals(len(overs))
     snr_db = power_db - loss_db[who, bins] + gain_db + slow_db + quick_db - noises_dbm
     chance = np.round(1 / (1 + np.exp(np.clip((DECODED_DB - snr_db) / SOFT_DB, -50, 50))), 9)
-    decoded = np.flatnonzero(dice.shares(len(overs)) < 0.96 * chance)
+    decoded = np.flatnonzero(dice.shares(len(overs)) < (1 - MISSED) * chance)
     jitter = dice.normals(3 * len(overs)).reshape(3, -1)
     heard = []
     for k in decoded.tolist():
@@ -378,11 +397,12 @@ def receptions(senders: list[Sender], noise: FloatArray) -> list[Entry]:
 
 def false_decodes(calls: set[str]) -> list[Entry]:
     """Return messages that nobody sent: call signs heard once, from places that nobody would believe."""
-    dice, found = Dice(6), []
+    dice = Dice(6)
+    found: list[Entry] = []
     while len(found) < FALSE_DECODES:
         at_s = SLOT_S * dice.below(NIGHTS * DAY_S // SLOT_S)
-        call = f"Q{dice.below(10)}" + "".join(chr(65 + dice.below(26)) for _ in range(3))
-        place = "".join("AR"[dice.below(2)] if k < 2 else str(dice.below(10)) for k in range(4))
+        call, corner = dice.call_sign(), ("AA", "AR", "RA", "RR")[dice.below(4)]
+        place = f"{corner}{dice.below(10)}{dice.below(10)}"
         if hearing(at_s, at_s + SLOT_S) and call not in calls and not TAKEN_OFF[0] <= at_s < TAKEN_OFF[1]:
             found.append(line_of(
                 at_s, "heard", audio_hz=dice.below(2_900), snr_db=-24 + dice.below(3), mode=MODE,

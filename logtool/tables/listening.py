@@ -13,9 +13,10 @@ MINUTE_US = 60_000_000
 
 
 def make_stretches(connection: duckdb.DuckDBPyConnection, gap_min: float) -> None:
-    """Make the table `stretch`: receiver, band, from_us, to_us and listening (`recorded`, `assumed`).
+    """Make the table `stretch`: receiver, band, from_us and to_us.
 
-    Needs the tables `tally`, `event` and `dial_band`. Stretches of one receiver and band do not overlap.
+    Recorded ones for receivers with any watch, assumed ones for the others. Needs the tables `tally`,
+    `event` and `dial_band`. Stretches of one receiver and band do not overlap.
     A dial that is not told is that of the latest setup or heard line before; of several at one instant, all.
 
     Parameters
@@ -54,11 +55,10 @@ def make_stretches(connection: duckdb.DuckDBPyConnection, gap_min: float) -> Non
         guessed AS (
             SELECT a.receiver, t.dials, from_us, to_us
             FROM assumed a ASOF LEFT JOIN tuned t ON a.receiver = t.receiver AND a.from_us >= t.time_us),
-        piece AS (
-            SELECT *, 'recorded' AS listening FROM told UNION ALL SELECT *, 'assumed' FROM guessed),
+        piece AS (FROM told UNION ALL FROM guessed),
         banded AS (
-            SELECT DISTINCT receiver, band, from_us, to_us, listening
-            FROM (SELECT receiver, unnest(coalesce(dials, [NULL])) AS dial_hz, from_us, to_us, listening FROM piece)
+            SELECT DISTINCT receiver, band, from_us, to_us
+            FROM (SELECT receiver, unnest(coalesce(dials, [NULL])) AS dial_hz, from_us, to_us FROM piece)
             LEFT JOIN dial_band USING (dial_hz)),
         marked AS (
             SELECT *, from_us > max(to_us) OVER (
@@ -67,7 +67,7 @@ def make_stretches(connection: duckdb.DuckDBPyConnection, gap_min: float) -> Non
         joined AS (
             SELECT *, sum(coalesce(apart, true)::INTEGER) OVER (
                 PARTITION BY receiver, band ORDER BY from_us, to_us ROWS UNBOUNDED PRECEDING) AS nth FROM marked)
-        SELECT receiver, band, min(from_us) AS from_us, max(to_us) AS to_us, any_value(listening) AS listening
+        SELECT receiver, band, min(from_us) AS from_us, max(to_us) AS to_us
         FROM joined GROUP BY receiver, band, nth""")
 
 
@@ -95,11 +95,11 @@ def make_listening(connection: duckdb.DuckDBPyConnection) -> None:
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE listening AS
         WITH hourly AS (
-            SELECT receiver, band, listening, from_us, to_us,
+            SELECT receiver, band, from_us, to_us,
                 unnest(range(from_us // {HOUR_US}, (to_us - 1) // {HOUR_US} + 1)) AS hour
             FROM stretch),
         cut AS (
-            SELECT spot.*, band, listening, greatest(from_us, start_us) AS from_us, least(to_us, stop_us) AS to_us
+            SELECT spot.*, band, greatest(from_us, start_us) AS from_us, least(to_us, stop_us) AS to_us
             FROM hourly JOIN spot USING (receiver, hour)
             WHERE from_us < stop_us AND to_us > start_us)
         SELECT name AS receiver, antenna, place, band, hour, night, start_us, from_us, to_us, listening FROM cut""")

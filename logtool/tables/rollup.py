@@ -33,7 +33,7 @@ _SECOND_US = 1_000_000
 def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     """Make the tables that all figures are built from, unless they are there; return the connection.
 
-    `rollup` has receiver (its name), antenna, place, band, mode, sender (empty: unnamed), hour, start_us,
+    `rollup` has receiver (its name), antenna, place, listening, band, mode, sender (empty: unnamed), hour, start_us,
     night, n, first_us, last_us, again (a reception of it was heard again), row (of `tally`, for its
     lists), locator and borrowed (of the sender in the hour). `listening` says when the receiver
     listened, `pair` how far it is from a place to a locator.
@@ -114,7 +114,9 @@ def _make_spots(logs: Logs) -> None:
         piece AS (
             SELECT *, lead(start_us, 1, (hour + 1) * {HOUR_US}) OVER (
                 PARTITION BY receiver, hour ORDER BY start_us) AS stop_us FROM cut)
-        SELECT piece.*, name, antenna, place, lon_deg
+        SELECT piece.*, name, antenna, place, lon_deg,
+            CASE WHEN piece.receiver IN (SELECT receiver FROM event WHERE kind = 'watch')
+                THEN 'recorded' ELSE 'assumed' END AS listening
         FROM piece ASOF JOIN station ON piece.receiver = station.receiver AND start_us >= since_us""")
     hours = connection.execute("SELECT DISTINCT lon_deg, hour FROM spot ORDER BY ALL").fetchall()
     nights: list[int] = []
@@ -133,7 +135,7 @@ def _make_pieces(connection: duckdb.DuckDBPyConnection) -> None:
     """Make the table `piece`: the tally's rows with band, station and their first and last reception."""
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE piece AS
-        SELECT t.rowid AS row, spot.name AS receiver, antenna, place, band, mode, upper(sender) AS sender, hour,
+        SELECT t.rowid AS row, spot.name AS receiver, antenna, place, listening, band, mode, upper(sender) AS sender, hour,
             t.start_us, night, n, hour * {HOUR_US} + list_min(times) AS first_us,
             hour * {HOUR_US} + list_max(times) AS last_us
         FROM tally t JOIN spot ON t.receiver = spot.receiver AND t.start_us = spot.start_us

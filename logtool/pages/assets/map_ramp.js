@@ -4,7 +4,7 @@ logtoolMap.ramp = (() => {
   // shows without colour vision; hue goes from amber over red to blue-violet and so never meets green.
   const ANCHORS = {
     light: [[0.83, 0.135, 85], [0.66, 0.165, 42], [0.48, 0.155, 355], [0.29, 0.125, 285]],
-    dark: [[0.60, 0.15, 288], [0.68, 0.165, 345], [0.80, 0.125, 45], [0.95, 0.10, 100]],
+    dark: [[0.64, 0.135, 288], [0.71, 0.15, 345], [0.82, 0.115, 45], [0.95, 0.10, 100]],
   };
   const STEPS = 24; // colours in use; finer steps could not be told apart
   const FINE = 600;
