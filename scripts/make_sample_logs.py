@@ -140,8 +140,8 @@ class Dice:
 
     def shares(self, n: int) -> FloatArray:
         """Return n numbers from 0 to under 1."""
-        bits: NDArray[np.uint64] = self._raw(n) >> np.uint64(11)
-        return bits.astype(np.float64) / float(1 << 53)
+        shares: FloatArray = (self._raw(n) >> np.uint64(11)).astype(np.float64) / float(1 << 53)
+        return shares
 
     def share(self) -> float:
         """Return a number from 0 to under 1."""
@@ -150,7 +150,8 @@ class Dice:
     def normals(self, n: int) -> FloatArray:
         """Return n numbers, nearly normal (mean 0, deviation 1): twelve even ones added, which is exact."""
         even = self._raw(3 * n).view(np.uint16).reshape(n, 12).sum(axis=1)
-        return even.astype(np.float64) / float(1 << 16) - 6.0
+        normals: FloatArray = even.astype(np.float64) / float(1 << 16) - 6.0
+        return normals
 
     def call_sign(self) -> str:
         """Return a call sign that nobody has: Q, a digit and two or three letters."""

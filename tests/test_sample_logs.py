@@ -1,4 +1,4 @@
-"""The sample logs: made again to the byte, counted by the reader as by the script, and the scenario they tell."""
+"""The sample logs: made again to the byte, counted alike by reader and script, and true to their scenario."""
 
 from __future__ import annotations
 

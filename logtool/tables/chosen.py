@@ -24,15 +24,16 @@ def make_chosen(logs: Logs, choice: Choice) -> tuple[duckdb.DuckDBPyConnection, 
     """
     connection = make_rollup(logs, choice)
     for name, source in (("heard", "rollup"), ("listened", "listening")):
-        where = " AND ".join(_conditions(choice, of_receptions=name == "heard"))
+        where = " AND ".join(conditions(choice, of_receptions=name == "heard"))
         connection.execute(f"""
             CREATE OR REPLACE TEMP TABLE {name} AS
             SELECT * EXCLUDE (night), true AS whole, strftime(DATE '1970-01-01' + night::INTEGER, '%Y-%m-%d') AS night
             FROM {source} WHERE {where}""")
-    return connection, _unknown(connection, choice)
+    return connection, unknown_words(connection, choice)
 
 
-def _conditions(choice: Choice, *, of_receptions: bool) -> list[str]:
+def conditions(choice: Choice, *, of_receptions: bool) -> list[str]:
+    """Return the SQL conditions of the choice on rows of `rollup` or, without mode and sender, `listening`."""
     conditions = ["true"]
     if choice.from_us is not None:
         conditions.append(f"start_us >= {choice.from_us}")
@@ -57,7 +58,7 @@ def _conditions(choice: Choice, *, of_receptions: bool) -> list[str]:
     return conditions
 
 
-def _unknown(connection: duckdb.DuckDBPyConnection, choice: Choice) -> list[str]:
+def unknown_words(connection: duckdb.DuckDBPyConnection, choice: Choice) -> list[str]:
     """Return a note for each chosen word that the inputs do not have, with those they have."""
     notes = []
     chosen = {
@@ -77,6 +78,11 @@ def _unknown(connection: duckdb.DuckDBPyConnection, choice: Choice) -> list[str]
             if word not in known and word not in plain:
                 notes.append(f"no {key} {word!r} in the inputs; there are: {', '.join(known) or 'none'}")
     return notes
+
+
+def same(a: str, b: str, keys: tuple[str, ...]) -> str:
+    """Return the SQL condition that two relations agree in the keys, nulls being equal."""
+    return " AND ".join(f"{a}.{key} IS NOT DISTINCT FROM {b}.{key}" for key in keys)
 
 
 def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> None:

@@ -80,12 +80,8 @@ def resolve(connection: duckdb.DuckDBPyConnection, name: str, keys: tuple[str, .
     connection.execute(f"ALTER TABLE {name} DROP COLUMN contested")
 
 
-def make_sender_hours(connection: duckdb.DuckDBPyConnection) -> None:
-    """Make the table `sender_hour`: sender, hour, locator (null: none) and borrowed.
-
-    An hour without a locator borrows from the nearest hour that has one, the earlier on a tie, at most
-    14 days away; call signs with `/` never borrow.
-    """
+def make_own_hours(connection: duckdb.DuckDBPyConnection) -> None:
+    """Make the table `own_hour`: sender, hour and locator where it gave one, over all receivers."""
     resolve(
         connection,
         "own_hour",
@@ -95,11 +91,27 @@ def make_sender_hours(connection: duckdb.DuckDBPyConnection) -> None:
                   FROM tally WHERE sender <> '')
             GROUP BY ALL""",
     )
+
+
+def make_sender_hours(connection: duckdb.DuckDBPyConnection, name: str, wanted: str) -> None:
+    """Make a table of sender, hour, locator (null: none) and borrowed for the pairs that are wanted.
+
+    An hour without a locator borrows from the nearest hour that has one, the earlier on a tie, at most
+    14 days away; call signs with `/` never borrow.
+
+    Parameters
+    ----------
+    connection : duckdb.DuckDBPyConnection
+        Where the table `own_hour` is.
+    name : str
+        The table's name.
+    wanted : str
+        SQL of a relation of distinct `sender` and `hour`.
+    """
     connection.execute(f"""
-        CREATE OR REPLACE TEMP TABLE sender_hour AS
-        WITH heard AS (
-            SELECT DISTINCT upper(sender) AS sender, start_us // {HOUR_US} AS hour FROM tally WHERE sender <> ''),
-        without AS (SELECT * FROM heard ANTI JOIN own_hour USING (sender, hour)),
+        CREATE OR REPLACE TEMP TABLE {name} AS
+        WITH wanted AS ({wanted}),
+        without AS (SELECT * FROM wanted ANTI JOIN own_hour USING (sender, hour)),
         near AS (
             SELECT w.sender, w.hour, e.hour AS e_hour, e.locator AS e_locator, l.hour AS l_hour,
                 l.locator AS l_locator
@@ -108,10 +120,10 @@ def make_sender_hours(connection: duckdb.DuckDBPyConnection) -> None:
             ASOF LEFT JOIN own_hour l ON w.sender = l.sender AND w.hour < l.hour
             WHERE NOT contains(w.sender, '/')),
         lent AS (
-            SELECT sender, hour, CASE WHEN l_hour IS NULL OR hour - e_hour <= l_hour - hour THEN e_locator
-                ELSE l_locator END AS locator
+            SELECT sender, hour, CASE WHEN e_hour IS NULL OR l_hour - hour < hour - e_hour THEN l_locator
+                ELSE e_locator END AS locator
             FROM near WHERE least(hour - e_hour, l_hour - hour) <= {BORROW_HOURS})
-        SELECT sender, hour, locator, false AS borrowed FROM own_hour
+        SELECT sender, hour, locator, false AS borrowed FROM own_hour SEMI JOIN wanted USING (sender, hour)
         UNION ALL SELECT sender, hour, locator, true FROM lent
         UNION ALL SELECT sender, hour, NULL, false FROM without ANTI JOIN lent USING (sender, hour)""")
 

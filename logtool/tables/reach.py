@@ -10,7 +10,7 @@ from logtool.places.locator import centres
 from logtool.places.sun import zenith_deg
 from logtool.records.tally import HOUR_US
 from logtool.tables.choice import Choice, choose
-from logtool.tables.chosen import make_chosen, make_senders
+from logtool.tables.chosen import make_chosen, make_senders, same
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -57,23 +57,14 @@ FIGURES = f"""
     CASE WHEN min(first_mode) = max(last_mode) THEN quantile_cont(snr_median_db, 0.5) END AS snr_median_db"""
 
 
-def thinned(listening_min: str) -> str:
-    """Return the SQL sum over senders for `senders_in_30`, given the minutes listened in the row."""
-    return (
-        f"CASE WHEN {listening_min} >= {SHARE_MIN}"
-        f" THEN sum(1 - (1 - {SHARE_MIN} / {listening_min}) ** per_sender.n) END"
-    )
-
-
-def same(a: str, b: str, keys: tuple[str, ...]) -> str:
-    """Return the SQL condition that two relations agree in the keys, nulls being equal."""
-    return " AND ".join(f"{a}.{key} IS NOT DISTINCT FROM {b}.{key}" for key in keys)
+# Senders, each counted by its chance of being heard in 30 of the minutes listened.
+THINNED = f"sum(1 - (1 - {SHARE_MIN} / greatest(listening_min, {SHARE_MIN})) ** per_sender.n)"
 
 
 def make_rows(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> None:
     """Make the table `row`: what a table with the keys says, from `heard` and `listened`.
 
-    It has the keys, listening_min, listening, receptions, unnamed, place, first_us, last_us, senders_in_30
+    It has the keys, listening_min, listening, receptions, unnamed, place, lon_deg, first_us, last_us, senders_in_30
     and the columns of `FIGURES`. A row has receptions or listening; modes have no listening of their own.
     """
     make_senders(connection, keys)
@@ -85,26 +76,27 @@ def make_rows(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> N
         CREATE OR REPLACE TEMP TABLE counted AS
         WITH minutes AS (
             SELECT {timed}, sum(to_us - from_us) / {_MINUTE_US} AS listening_min, min(listening) AS first_way,
-                max(listening) AS last_way, arg_max(place, to_us) AS listened_at
+                max(listening) AS last_way, arg_max(place, to_us) AS listened_at,
+                any_value(lon_deg) AS lon_deg
             FROM listened GROUP BY {timed}),
         receptions AS (
             SELECT {listed}, sum(n)::BIGINT AS receptions,
                 coalesce(sum(n) FILTER (sender = ''), 0)::BIGINT AS unnamed, arg_max(place, last_us) AS heard_at,
                 min(first_us) AS first_us, max(last_us) AS last_us, min(listening) AS first_way,
-                max(listening) AS last_way
+                max(listening) AS last_way, any_value(lon_deg) AS lon_deg
             FROM heard GROUP BY {listed})
         SELECT {", ".join(f"coalesce(r.{key}, m.{key}) AS {key}" if key != "mode" else "mode" for key in keys)},
             coalesce(listening_min, 0) AS listening_min,
             CASE WHEN least(r.first_way, m.first_way) = greatest(r.last_way, m.last_way)
                 THEN least(r.first_way, m.first_way) ELSE '{MIXED}' END AS listening,
             coalesce(receptions, 0) AS receptions, coalesce(unnamed, 0) AS unnamed,
-            coalesce(heard_at, listened_at) AS place, first_us, last_us
+            coalesce(heard_at, listened_at) AS place, coalesce(r.lon_deg, m.lon_deg) AS lon_deg, first_us, last_us
         FROM receptions r FULL JOIN minutes m ON {same("r", "m", timed_keys)}""")
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE row AS
         WITH figure AS (
-            SELECT {of_sender}, {FIGURES}, {thinned("any_value(listening_min)")} AS senders_in_30
-            FROM per_sender JOIN counted ON {same("per_sender", "counted", keys)} GROUP BY {of_sender})
+            SELECT {of_sender}, {FIGURES}, {THINNED} AS senders_in_30
+            FROM per_sender JOIN counted ON {same("per_sender", "counted", keys)} GROUP BY {of_sender}, listening_min)
         SELECT counted.*, figure.* EXCLUDE ({listed}, senders, heard_once, located, squares, senders_in_30),
             coalesce(senders, 0) AS senders, coalesce(heard_once, 0) AS heard_once,
             coalesce(located, 0) AS located, coalesce(squares, 0) AS squares,

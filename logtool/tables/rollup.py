@@ -17,7 +17,7 @@ from logtool.records.layout import COLUMN_NAMES
 from logtool.records.tally import HOUR_US
 from logtool.tables.choice import Choice
 from logtool.tables.listening import make_listening, make_stretches
-from logtool.tables.locators import make_pairs, make_sender_hours
+from logtool.tables.locators import make_own_hours, make_pairs, make_sender_hours
 from logtool.tables.stations import stations
 
 if TYPE_CHECKING:
@@ -33,7 +33,7 @@ _SECOND_US = 1_000_000
 def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     """Make the tables that all figures are built from, unless they are there; return the connection.
 
-    `rollup` has receiver (its name), antenna, place, listening, band, mode, sender (empty: unnamed), hour, start_us,
+    `rollup` has receiver (its name), antenna, place, lon_deg, listening, band, mode, sender (empty: unnamed), hour, start_us,
     night, n, first_us, last_us, again (a reception of it was heard again), row (of `tally`, for its
     lists), locator and borrowed (of the sender in the hour). `listening` says when the receiver
     listened, `pair` how far it is from a place to a locator.
@@ -55,8 +55,11 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     make_stretches(connection, choice.gap_min)
     _make_spots(logs)
     make_listening(connection)
-    make_sender_hours(connection)
+    make_own_hours(connection)
     _make_pieces(connection)
+    make_sender_hours(
+        connection, "sender_hour", "SELECT DISTINCT sender, hour FROM piece WHERE sender <> ''"
+    )
     _make_rollup(connection)
     make_pairs(connection, "SELECT DISTINCT place, locator FROM rollup")
     logs.rolled_up_for = wanted
@@ -135,7 +138,7 @@ def _make_pieces(connection: duckdb.DuckDBPyConnection) -> None:
     """Make the table `piece`: the tally's rows with band, station and their first and last reception."""
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE piece AS
-        SELECT t.rowid AS row, spot.name AS receiver, antenna, place, listening, band, mode, upper(sender) AS sender, hour,
+        SELECT t.rowid AS row, spot.name AS receiver, antenna, place, lon_deg, listening, band, mode, upper(sender) AS sender, hour,
             t.start_us, night, n, hour * {HOUR_US} + list_min(times) AS first_us,
             hour * {HOUR_US} + list_max(times) AS last_us
         FROM tally t JOIN spot ON t.receiver = spot.receiver AND t.start_us = spot.start_us

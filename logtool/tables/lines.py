@@ -1,0 +1,39 @@
+"""The lines behind a figure: file, line number and what the line says."""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from typing import TYPE_CHECKING, Any
+
+from logtool.places.locator import written
+from logtool.records.layout import COLUMNS
+from logtool.records.locate import line_numbers
+from logtool.tables.choice import Choice, choose
+from logtool.tables.chosen import unknown_words
+from logtool.tables.receptions import make_receptions
+from logtool.tables.result import Table
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+    from logtool.records.reader import Logs
+
+
+def lines_table(logs: Logs, choice: Choice) -> Table:
+    """Return the columns of `lines`; see `lines`."""
+    make_receptions(logs, choice)
+    wanted: dict[int, dict[bytes, tuple[int, list[str]]]] = defaultdict(dict)
+    rows = logs.connection.execute("SELECT file, raw, time_us, f FROM reception").fetchall()
+    for file, raw, time_us, fields in rows:
+        wanted[file][raw.encode()] = (time_us, fields)
+    columns: dict[str, list[Any]] = {name: [] for name in ("file", "line", *(c.name for c in COLUMNS))}
+    for file in sorted(wanted):
+        left = wanted[file]
+        for number, raw in line_numbers(logs.paths[file], left):
+            time_us, fields = left[raw]
+            values = [logs.file_names[file], number, time_us, *map(_read, COLUMNS[1:], fields[1:])]
+            for name, value in zip(columns, values, strict=True):
+                columns[name].append(value)
+    table = Table(columns)
+    table.notes = unknown_words(logs.connection, choice)
+    return table

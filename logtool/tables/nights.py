@@ -1,0 +1,76 @@
+"""Nights side by side."""
+
+from __future__ import annotations
+
+from datetime import date
+from typing import TYPE_CHECKING, Any
+
+from logtool.places.nights import night_bounds
+from logtool.tables.choice import Choice, choose
+from logtool.tables.chosen import make_chosen, same
+from logtool.tables.reach import make_rows
+from logtool.tables.result import Table
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+    from logtool.records.reader import Logs
+
+KEYS = ("night", "receiver", "antenna", "band")
+_EPOCH_DAY = date(1970, 1, 1).toordinal()
+
+
+def nights_table(logs: Logs, choice: Choice) -> Table:
+    """Return the columns of `nights`; see `nights`."""
+    connection, notes = make_chosen(logs, choice)
+    by = tuple(key for key in choice.by if key not in KEYS)
+    keys = (*KEYS, *by)
+    make_rows(connection, ("hour", *keys))
+    connection.execute(f"""
+        CREATE OR REPLACE TEMP TABLE hourly AS
+        SELECT {", ".join(keys)}, avg(senders_in_30) AS senders_in_30 FROM row GROUP BY ALL""")
+    make_rows(connection, keys)
+    order = ", ".join(f"row.{key} NULLS FIRST" for key in keys)
+    table = Table.of(
+        connection.execute(f"""
+            SELECT {", ".join(f"row.{key}" for key in keys)}, row.lon_deg AS "from", row.lon_deg AS "to", listening_min,
+                listening, receptions, senders, hourly.senders_in_30, squares, median_km, p90_km, farthest_km,
+                farthest_sender
+            FROM row JOIN hourly ON {same("row", "hourly", keys)} ORDER BY {order}""")
+    )
+    bounds = [
+        night_bounds(date.fromisoformat(night).toordinal() - _EPOCH_DAY, lon_deg)
+        for night, lon_deg in zip(table.columns["night"], table.columns["from"], strict=True)
+    ]
+    table.columns["from"] = [round(start_s) * 1_000_000 for start_s, _ in bounds]
+    table.columns["to"] = [round(stop_s) * 1_000_000 for _, stop_s in bounds]
+    table.notes = notes
+    return table
+
+
+def nights(logs: Logs, **words: Any) -> pd.DataFrame:
+    """Return what each night gave, from one solar noon at the receiver to the next. [km]
+
+    A night is named by the local mean solar date at the noon on which it begins. `senders_in_30` is the
+    mean over its hours, so that a short night is not put behind a long one; from counts alone no night
+    is better than another.
+
+    Parameters
+    ----------
+    logs : Logs
+        Opened logs, see `logtool.open_logs`.
+    **words
+        The words of `logtool.tables.choice.choose`.
+
+    Returns
+    -------
+    pandas.DataFrame
+        One row per night, receiver, antenna and band with the columns of `logtool nights --json`; times
+        as timestamps in UTC, noons to the second.
+
+    Raises
+    ------
+    UsageError
+        Where a word cannot be used.
+    """
+    return nights_table(logs, choose(**words)).to_pandas()
