@@ -70,7 +70,9 @@ def open_with(
         if not re.fullmatch(LOCATOR_FORM, at):
             raise PlaceError(f"--at {at!r} is not a locator; give one like JN58 or JN58td")
         if len(at) < SETUP_LOCATOR_CHARACTERS:
-            raise PlaceError(f"--at {at!r} is too coarse for a receiver; give 4 characters or more, like JN58")
+            raise PlaceError(
+                f"--at {at!r} is too coarse for a receiver; give 4 characters or more, like JN58"
+            )
     if antenna_name is not None and not re.fullmatch(NAME_FORM, antenna_name):
         raise UsageError(
             f"--antenna-name {antenna_name!r}: a name has 1 to 32 of the letters A-Z a-z, digits, _ and -"

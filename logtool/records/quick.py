@@ -157,6 +157,5 @@ def accepts_sql(kind: str) -> str:
         needed = r"CASE WHEN regexp_matches(line, '^[^\t]*\twatch\t') THEN 'on_s' ELSE 'dbfs' END"
         details += f" AND list_contains({keys}, {needed})"
     return (
-        f"(strlen(line) <= {QUICK_LINE_BYTES} AND regexp_full_match(line, {sql_text(pattern)})"
-        f" AND {details})"
+        f"(strlen(line) <= {QUICK_LINE_BYTES} AND regexp_full_match(line, {sql_text(pattern)}) AND {details})"
     )

@@ -16,7 +16,7 @@ STDIN = "-"
 LOG_ENDINGS = (".log", ".txt", ".tsv")
 PACKED_ENDINGS = (".gz", ".zst")
 BLOCK_BYTES = 1 << 19  # a block of text that is looked at in one go; our choice
-PIECE_BYTES = 1 << 16  # fed to an unpacker at a time, so that damage costs little good text; our choice
+PIECE_BYTES = 1 << 12  # fed to an unpacker at a time, so that damage costs little good text; our choice
 
 
 @dataclass(frozen=True)

@@ -182,7 +182,9 @@ def _drop_repeated_heard(connection: duckdb.DuckDBPyConnection) -> list[Repeats]
         WHERE tally.rowid = again.row""")
     return [
         Repeats(*row)
-        for row in connection.execute("SELECT file, count(*) FROM member WHERE NOT kept GROUP BY file").fetchall()
+        for row in connection.execute(
+            "SELECT file, count(*) FROM member WHERE NOT kept GROUP BY file"
+        ).fetchall()
     ]
 
 

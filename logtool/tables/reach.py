@@ -136,7 +136,7 @@ def _zeniths(hours_us: list[int], places: list[str | None]) -> list[float | None
 def _summary(connection: duckdb.DuckDBPyConnection, table: Table) -> dict[str, Any]:
     make_rows(connection, ("whole",))
     whole = Table.of(
-        connection.execute(f"SELECT first_us AS \"from\", last_us AS \"to\", {', '.join(COLUMNS)} FROM row")
+        connection.execute(f'SELECT first_us AS "from", last_us AS "to", {", ".join(COLUMNS)} FROM row')
     )
     found = {name: values[0] if values else None for name, values in whole.columns.items()}
     keys: dict[str, Any] = {}

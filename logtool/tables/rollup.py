@@ -57,9 +57,7 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     make_listening(connection)
     make_own_hours(connection)
     _make_pieces(connection)
-    make_sender_hours(
-        connection, "sender_hour", "SELECT DISTINCT sender, hour FROM piece WHERE sender <> ''"
-    )
+    make_sender_hours(connection, "sender_hour", "SELECT DISTINCT sender, hour FROM piece WHERE sender <> ''")
     _make_rollup(connection)
     make_pairs(connection, "SELECT DISTINCT place, locator FROM rollup")
     logs.rolled_up_for = wanted
@@ -127,7 +125,9 @@ def _make_spots(logs: Logs) -> None:
         of_lon = np.array([hour for lon, hour in hours if lon == lon_deg])
         nights += night_of_hours(of_lon * 3600.0, lon_deg).tolist()
     columns = {"lon_deg": "DOUBLE", "hour": "BIGINT", "night": "BIGINT"}
-    create_table(connection, "hour_night", columns, [[lon for lon, _ in hours], [h for _, h in hours], nights])
+    create_table(
+        connection, "hour_night", columns, [[lon for lon, _ in hours], [h for _, h in hours], nights]
+    )
     connection.execute("""
         CREATE OR REPLACE TEMP TABLE spot AS
         SELECT spot.*, night FROM spot JOIN hour_night

@@ -15,7 +15,9 @@ if TYPE_CHECKING:
 
 KEYS = ("receiver", "antenna", "band")
 SECTORS = 16
-SECTOR_DEG = 360 / SECTORS  # sector k holds the bearings of k * 22.5 +- 11.25 degrees, the lower bound with it
+SECTOR_DEG = (
+    360 / SECTORS
+)  # sector k holds the bearings of k * 22.5 +- 11.25 degrees, the lower bound with it
 
 
 def sectors_table(logs: Logs, choice: Choice) -> Table:

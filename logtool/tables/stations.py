@@ -96,4 +96,3 @@ def _first_places(locators: list[str]) -> dict[str, str]:
 
 def _lon_deg(locator: str) -> float:
     return centre(locator)[1]
-
