@@ -43,11 +43,20 @@ def check_table(logs: Logs, choice: Choice) -> Table:
         }
     )
     findings = [*_before_setup(logs), *_gaps(logs, choice), *_steps(logs)]
+    findings = [finding for finding in findings if _is_chosen(finding, choice)]
     findings.sort(key=lambda finding: (finding["from"], finding["receiver"], finding["what"]))
     table.findings = [
         {key: output_value(key, value) for key, value in finding.items()} for finding in findings
     ]
     return table
+
+
+def _is_chosen(finding: dict[str, Any], choice: Choice) -> bool:
+    name = finding["receiver"]
+    if choice.receivers and name not in choice.receivers and name.split("@")[0] not in choice.receivers:
+        return False
+    after_end = choice.to_us is not None and finding["from"] >= choice.to_us
+    return not after_end and not (choice.from_us is not None and finding["to"] < choice.from_us)
 
 
 def _finding(
@@ -142,7 +151,7 @@ def check(logs: Logs, **words: Any) -> pd.DataFrame:
     logs : Logs
         Opened logs, see `logtool.open_logs`.
     **words
-        `gap_min`: gaps longer than this are told.
+        `gap_min`: gaps longer than this are told; from_, to and receiver choose among the findings.
 
     Returns
     -------

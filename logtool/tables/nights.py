@@ -38,6 +38,7 @@ def nights_table(logs: Logs, choice: Choice) -> Table:
                 farthest_sender
             FROM row JOIN hourly ON {same("row", "hourly", keys)} ORDER BY {order}""")
     )
+    table.lon_deg = table.columns["from"]
     bounds = [
         night_bounds(date.fromisoformat(night).toordinal() - _EPOCH_DAY, lon_deg)
         for night, lon_deg in zip(table.columns["night"], table.columns["from"], strict=True)

@@ -52,6 +52,7 @@ class Table:
     summary: dict[str, Any] | None = None
     findings: list[dict[str, Any]] | None = None
     notes: list[str] = field(default_factory=list)
+    lon_deg: list[float | None] | None = None  # of the receiver in each row, for the local mean solar time
 
     @classmethod
     def of(cls, relation: duckdb.DuckDBPyConnection) -> Table:

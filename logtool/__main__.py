@@ -1,0 +1,6 @@
+"""`python -m logtool`."""
+
+from logtool.cli.main import main
+
+if __name__ == "__main__":
+    main()

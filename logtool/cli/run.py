@@ -1,0 +1,161 @@
+"""What all table commands do: open the logs, make the table, print it, and end with the right status."""
+
+from __future__ import annotations
+
+import csv
+import json
+import sys
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager, nullcontext
+from typing import IO, TYPE_CHECKING, Any
+
+import click
+
+from logtool import __version__
+from logtool.errors import UsageError
+
+if TYPE_CHECKING:
+    from logtool.records.reader import Logs
+    from logtool.tables.choice import Choice
+    from logtool.tables.result import Table
+
+EXIT_NO_RECORD = 1
+EXIT_UNREAD = 3
+_CHOICE_WORDS = (
+    "from_",
+    "to",
+    "receiver",
+    "antenna",
+    "band",
+    "mode",
+    "night",
+    "sender",
+    "by",
+    "gap_min",
+)
+_NAMES = {"from_": "from", "as_json": "json", "as_csv": "csv", "show_all": "all"}
+
+
+def told_options(words: dict[str, Any]) -> dict[str, Any]:
+    """Return the options of a call by their names on the command line, defaults too."""
+    return {
+        _NAMES.get(name, name): list(value) if isinstance(value, tuple) else value
+        for name, value in words.items()
+        if name != "paths"
+    }
+
+
+def choice_of(words: dict[str, Any]) -> Choice:
+    """Return the checked choice of a call."""
+    from logtool.tables.choice import choose
+
+    return choose(**{name: words[name] for name in _CHOICE_WORDS if name in words})
+
+
+@contextmanager
+def opened(words: dict[str, Any], *, with_digest: bool) -> Iterator[Logs]:
+    """Open the logs of a call, with progress on a terminal; write what was set aside if it is wanted."""
+    from logtool.cli.progress import ProgressBar
+    from logtool.records.opening import open_with
+    from logtool.records.reader import OpenOptions
+
+    with ProgressBar(quiet=words["quiet"]) as bar:
+        options = OpenOptions(with_digest=with_digest, anyway=words["anyway"], progress=bar)
+        with open_with(words["paths"], words["at"], words["antenna_name"], options) as logs:
+            yield logs
+            bar.close()
+            if words["set_aside"] is not None:
+                _write_set_aside(logs, words["set_aside"])
+
+
+def _write_set_aside(logs: Logs, path: str) -> None:
+    from logtool.records.writer import whole_file
+    from logtool.tables.checks import escaped
+
+    with whole_file(path) as file:
+        for name, number, reason, line in logs.set_aside():
+            file.write(
+                f"{escaped(name.encode(errors='surrogateescape'))}\t{number}\t{reason}\t{escaped(line)}\n"
+            )
+
+
+def status_of(logs: Logs, *, quiet: bool, notes: list[str]) -> int:
+    """Tell on standard error what was refused, odd or empty; return the exit status."""
+    if not quiet:
+        for note in [*logs.notes, *notes]:
+            click.echo(f"logtool: note: {note}", err=True)
+    for refusal in logs.refused:
+        click.echo(f"logtool: {refusal}", err=True)
+    if logs.refused:
+        return EXIT_UNREAD
+    if not any(file.records for file in logs.inputs):
+        click.echo(
+            "logtool: the inputs hold no record; `logtool check` shows what became of each line", err=True
+        )
+        return EXIT_NO_RECORD
+    return 0
+
+
+def run_table(
+    name: str, words: dict[str, Any], make: Callable[[Logs, Choice], Table], *, strict: bool = False
+) -> int:
+    """Run a command that prints a table; return the exit status."""
+    if words["as_json"] and words["as_csv"]:
+        raise UsageError("--json and --csv exclude each other; give one of them")
+    choice = choice_of(words)
+    with opened(words, with_digest=words["as_json"]) as logs:
+        table = make(logs, choice)
+        logs.tally()
+        with _output(words["out"]) as out:
+            if words["as_json"]:
+                _write_json(out, name, words, logs, table)
+            elif words["as_csv"]:
+                _write_csv(out, table)
+            else:
+                from logtool.pages.table import write_table
+
+                write_table(out, name, table, logs.inputs, show_all=words["show_all"])
+        status = status_of(logs, quiet=words["quiet"], notes=table.notes)
+        if status == 0 and strict and any(file.set_aside for file in logs.inputs):
+            return EXIT_NO_RECORD
+    return status
+
+
+def _output(path: str | None) -> Any:
+    from logtool.records.writer import whole_file
+
+    return nullcontext(sys.stdout) if path is None else whole_file(path)
+
+
+def _write_json(out: IO[str], name: str, words: dict[str, Any], logs: Logs, table: Table) -> None:
+    from logtool.records.layout import LAYOUT_VERSION
+
+    told: dict[str, Any] = {
+        "logtool": __version__,
+        "layout": LAYOUT_VERSION,
+        "command": name,
+        "options": told_options(words),
+        "inputs": [file.as_dict() for file in logs.inputs],
+        "rows": list(table.rows()),
+    }
+    if table.summary is not None:
+        told["summary"] = table.written_summary()
+    if table.findings is not None:
+        told["findings"] = table.findings
+    notes = [*logs.refused, *logs.notes, *table.notes]
+    if notes:
+        told["notes"] = notes
+    json.dump(told, out, ensure_ascii=True, allow_nan=False, indent=1)
+    out.write("\n")
+
+
+def _write_csv(out: IO[str], table: Table) -> None:
+    """Write the rows after RFC 4180, with a header, missing values empty."""
+    writer = csv.writer(out, lineterminator="\r\n")
+    writer.writerow(table.columns)
+    for row in table.rows():
+        writer.writerow(["" if value is None else _csv_value(value) for value in row.values()])
+
+
+def _csv_value(value: Any) -> Any:
+    return str(value).lower() if isinstance(value, bool) else value
