@@ -226,6 +226,7 @@ def write_table(out: IO[str], name: str, table: Table, inputs: list[FileLedger],
         columns.append(Shown(measure + " bar", "", _text, 2, right=False))
     if terminal and not show_all:
         columns = _that_fit(columns, cells, console.width)
+        _cut_to_fit(columns, cells, console.width)
     if kept:
         _print_rows(console, columns, cells)
     else:
@@ -292,14 +293,26 @@ def _that_fit(columns: list[Shown], cells: dict[str, list[str]], width: int) -> 
     return [column for column in columns if column.name in fitting]
 
 
+def _cut_to_fit(columns: list[Shown], cells: dict[str, list[str]], width: int) -> None:
+    """Cut the texts of flexible columns, so that the others keep their room."""
+    flexible = [column for column in columns if column.name in FLEXIBLE]
+    taken = sum(_width(column, cells) for column in columns if column.name not in FLEXIBLE)
+    for column in flexible:
+        room = max((width - taken) // len(flexible) - 2, FLEXIBLE_CELLS - 2)
+        cells[column.name] = [
+            cell if len(cell) <= room else cell[: room - 1] + "…" for cell in cells[column.name]
+        ]
+
+
 def _print_rows(console: Any, columns: list[Shown], cells: dict[str, list[str]]) -> None:
     from rich.table import Table as RichTable
     from rich.text import Text
 
     grid = RichTable(box=None, pad_edge=False, header_style="bold", padding=(0, 2, 0, 0))
     for column in columns:
+        longest = max(map(len, cells[column.name]))
         grid.add_column(
-            column.header.replace(" ", "\n"),
+            column.header if longest >= len(column.header) else column.header.replace(" ", "\n"),
             justify="right" if column.right else "left",
             no_wrap=True,
             overflow="ellipsis",
