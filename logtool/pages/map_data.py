@@ -22,10 +22,14 @@ class MapLine(NamedTuple):
 
 @dataclass(frozen=True)
 class MapReceiver:
-    """A receiver at one place, its locator's cell; one that moved is several, each with its own name."""
+    """A receiver at one place, its locator's cell; one that moved is several, each with its own name.
+
+    `assumed` where no watch says when it listened, so that its listening is assumed.
+    """
 
     name: str
     locator: str
+    assumed: bool = False
 
 
 @dataclass(frozen=True)
@@ -44,6 +48,7 @@ class MapPair:
     `sender` and `receiver` are indices. `distance_km` and `uncertainty_km` are None without a place,
     `bearing_deg` (at the receiver, from true north) also where the distance is below its uncertainty.
     `first` and `last` are times, RFC 3339 in UTC. `lines` are up to five of the lines behind the pair.
+    `locator` is the sender's place by what this receiver heard, where that is not the sender's over all.
     """
 
     sender: int
@@ -55,6 +60,7 @@ class MapPair:
     last: str
     heard_again: bool
     lines: tuple[MapLine, ...] = ()
+    locator: str | None = None
 
 
 @dataclass(frozen=True)
@@ -72,8 +78,10 @@ class MapHour:
     """One hour of UTC: its start, and the point under the sun at half past.
 
     `nights` names the night of the hour and `listening_min` the minutes listened in it, for each receiver
-    in the order of `MapData.receivers`; None where it is not known, `listening_min` empty where it is not
-    told at all.
+    in the order of `MapData.receivers`. A night is None where the receiver neither listened nor heard.
+    Minutes are 0 where a receiver whose listening is recorded did not listen, and None where that is not
+    known: receptions outside every watch, hours before its first or after its last, or gaps between records
+    too long to assume listening. `listening_min` is empty where it is not told at all.
     """
 
     start_unix_s: int
@@ -88,7 +96,8 @@ class MapCounts:
     """Receptions as columns of equal length, in any order: each row one sender in one group in one hour.
 
     `sender`, `group` and `hour` are indices; `snr_median_db` (noise in 2500 Hz) is None where no line gives
-    one or where modes mix.
+    one or where modes mix. `located` is whether the sender has a locator in the hour (empty: all of those
+    that have one over all hours).
     """
 
     sender: Sequence[int]
@@ -96,6 +105,7 @@ class MapCounts:
     hour: Sequence[int]
     receptions: Sequence[int]
     snr_median_db: Sequence[float | None]
+    located: Sequence[bool] = ()
 
 
 @dataclass(frozen=True)

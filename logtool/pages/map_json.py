@@ -59,6 +59,7 @@ def map_payload(data: MapData) -> dict[str, Any]:
 
     Counts are sorted by sender, group and hour and told as runs: `runs` holds sender, group and number of
     rows, and `hours` the steps from one hour to the next within a run, so that most numbers have one digit.
+    `unplaced` are the indices of the rows in whose hour the sender has no locator.
 
     Raises
     ------
@@ -121,7 +122,7 @@ def _receiver(receiver: MapReceiver, farthest_km: float) -> list[Any]:
         rings.append(
             [radius_km, _numbers(lats_deg[:-1], RING_DECIMALS), _numbers(lons_deg[:-1], RING_DECIMALS)]
         )
-    return [receiver.name, receiver.locator, _edges(receiver.locator), rings]
+    return [receiver.name, receiver.locator, _edges(receiver.locator), rings, int(receiver.assumed)]
 
 
 def _pair(pair: MapPair) -> list[Any]:
@@ -135,6 +136,7 @@ def _pair(pair: MapPair) -> list[Any]:
         _instant(pair.last),
         int(pair.heard_again),
         [part for line in pair.lines for part in _line(line)],
+        *([] if pair.locator is None else [pair.locator]),
     ]
 
 
@@ -169,14 +171,16 @@ def _numbers(values: Iterable[float], decimals: int) -> list[Any]:
 
 def _counts(counts: MapCounts) -> dict[str, list[Any]]:
     columns = (counts.sender, counts.group, counts.hour, counts.receptions, counts.snr_median_db)
-    _same_length("counts", columns)
+    _same_length("counts", (*columns, counts.located) if counts.located else columns)
+    located = counts.located or [True] * len(counts.sender)
     runs: list[int] = []
     steps: list[int] = []
     receptions: list[int] = []
     snr_db: list[Any] = []
+    unplaced: list[int] = []
     before = (-1, -1, 0)
-    rows = sorted(zip(*columns, strict=True), key=lambda row: row[:3])
-    for sender, group, hour, heard, median_db in rows:
+    rows = sorted(zip(*columns, located, strict=True), key=lambda row: row[:3])
+    for i, (sender, group, hour, heard, median_db, placed) in enumerate(rows):
         if (sender, group) != before[:2]:
             runs += (int(sender), int(group), 0)
             before = (sender, group, 0)
@@ -184,8 +188,10 @@ def _counts(counts: MapCounts) -> dict[str, list[Any]]:
         steps.append(int(hour - before[2]))
         receptions.append(int(heard))
         snr_db.append(_rounded(median_db, SNR_DECIMALS))
+        if not placed:
+            unplaced.append(i)
         before = (sender, group, hour)
-    return {"runs": runs, "hours": steps, "receptions": receptions, "snr": snr_db}
+    return {"runs": runs, "hours": steps, "receptions": receptions, "snr": snr_db, "unplaced": unplaced}
 
 
 def _totals(totals: MapTotals) -> list[Any]:

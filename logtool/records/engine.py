@@ -17,21 +17,20 @@ _NULL = sql_text("\x02")  # a line of this byte alone is read as NULL, and put b
 _READ_LINE_BYTES = 2 * MAX_LINE_BYTES + 64  # longest line that the engine is given, with room
 
 
-def connect(work: Path, threads: int | None, memory_mb: int | None) -> duckdb.DuckDBPyConnection:
+def connect(work: Path, threads: int | None, memory_mb: int) -> duckdb.DuckDBPyConnection:
     """Return a connection in memory that spills to the folder `work` and never uses the network."""
     import duckdb
 
-    config: dict[str, str | int | bool] = {
+    config: dict[str, str | bool | int | float | list[str]] = {
         "temp_directory": str(work / "spill"),
         "autoinstall_known_extensions": False,
         "autoload_known_extensions": False,
         "preserve_insertion_order": False,
         "enable_external_file_cache": False,
+        "memory_limit": f"{memory_mb}MB",
     }
     if threads is not None:
         config["threads"] = threads
-    if memory_mb is not None:
-        config["memory_limit"] = f"{memory_mb}MB"
     return duckdb.connect(":memory:", config=config)
 
 

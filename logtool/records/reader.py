@@ -15,13 +15,15 @@ from typing import TYPE_CHECKING
 
 from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
-from logtool.records.scan import Scan, ScanOptions, scan
+from logtool.records.scan import EndlessLineError, Scan, ScanOptions, scan
 from logtool.records.sources import sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
 
 if TYPE_CHECKING:
     import duckdb
 
+LEAST_MEMORY_MB = 700  # what ten million lines need without spilling, measured
+MEMORY_SHARE = 0.8  # of the text's size, above that
 _POLL_S = 0.2  # between two looks at the engine's progress
 _LOOK_SHARE = 0.2  # of the time of reading, about, goes into looking over the bytes
 
@@ -109,15 +111,19 @@ class Logs:
     def connection(self) -> duckdb.DuckDBPyConnection:
         """The engine's connection, opened on first use."""
         if self._connection is None:
-            self._connection = connect(
-                Path(self._folder.name), self._options.threads, self._options.memory_mb
-            )
+            memory_mb = self._options.memory_mb or self._enough_mb()
+            self._connection = connect(Path(self._folder.name), self._options.threads, memory_mb)
         return self._connection
+
+    def _enough_mb(self) -> int:
+        """Return how much memory the engine may take, unless it is told: more for more text."""
+        text_bytes = sum(path.stat().st_size for path in self.paths)
+        return max(LEAST_MEMORY_MB, round(MEMORY_SHARE * text_bytes / 1e6))
 
     @property
     def lines(self) -> str:
         """SQL of the relation of `file` and `line` over all files, empty lines left out."""
-        return lines_sql([scan.path for scan in self._scans])
+        return lines_sql(self.paths)
 
     @property
     def file_names(self) -> list[str]:
@@ -134,6 +140,7 @@ class Logs:
     @property
     def paths(self) -> list[Path]:
         """Where the text of each file can be read again, line numbers unchanged."""
+        self._keep_as_seen()
         return [scan.path for scan in self._scans]
 
     @property
@@ -152,14 +159,9 @@ class Logs:
         inner = frozenset(bound for bound in bounds if bound % HOUR_US)
         if self._bounds is not None and inner <= self._bounds:
             return
+        self._make_tally_as_seen(inner)
         self._bounds = inner
-        self._make_tally()
         self.read_times += 1
-        grown = [i for i, scan in enumerate(self._scans) if _has_changed(scan)]
-        if grown:
-            for i in grown:
-                self._copy_as_seen(i)
-            self._make_tally()
 
     def set_aside(self) -> list[tuple[str, int, str, bytes]]:
         """Return the file, line number, reason and bytes of every line set aside, in that order."""
@@ -176,7 +178,7 @@ class Logs:
             for number, reason, line in scan.set_aside
         ]
         for i, reasons in wanted.items():
-            found += [(i, n, reasons[line], line) for n, line in line_numbers(self._scans[i].path, reasons)]
+            found += [(i, n, reasons[line], line) for n, line in line_numbers(self.paths[i], reasons)]
         return [(self.file_names[i], n, reason, line) for i, n, reason, line in sorted(found)]
 
     def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:
@@ -190,11 +192,16 @@ class Logs:
         options = ScanOptions(self._options.with_digest, self._options.anyway, told)
         scans: list[Scan] = []
         for source, size in zip(sources, sizes, strict=True):
-            seen = scan(source, self._path_of(len(scans)), options)
+            path = self._path_of(len(scans))
+            try:
+                seen = scan(source, path, options)
+                refused = seen.refused and f"{source.name}: {seen.refused}"
+            except EndlessLineError as error:
+                refused = str(error)
             done += size
-            if seen.refused:
-                self.refused.append(f"{source.name}: {seen.refused}")
-                seen.path.unlink(missing_ok=True)
+            if refused:
+                self.refused.append(refused)
+                path.unlink(missing_ok=True)
                 continue
             if seen.broken:
                 self.notes.append(f"{source.name}: read up to a break: {seen.broken}")
@@ -206,18 +213,38 @@ class Logs:
         folder.mkdir(exist_ok=True)
         return folder / f"{index:08d}"
 
-    def _copy_as_seen(self, index: int) -> None:
-        seen = self._scans[index]
-        options = ScanOptions(self._options.with_digest, self._options.anyway)
-        self._scans[index] = scan(
-            seen.source, self._path_of(index, "-as-seen"), options, only_bytes=seen.stored_bytes
-        )
+    def _keep_as_seen(self) -> bool:
+        """Copy what was seen of each file that has another size by now; return whether there is any."""
+        changed = [i for i, seen in enumerate(self._scans) if _has_changed(seen)]
+        options = ScanOptions(self._options.with_digest, anyway=True)
+        for i in changed:
+            seen = self._scans[i]
+            path = self._path_of(i, "-as-seen")
+            self._scans[i] = scan(seen.source, path, options, only_bytes=seen.stored_bytes)
+        if changed:
+            self.setups = _setups(self._scans)
+        return bool(changed)
 
-    def _make_tally(self) -> None:
-        cuts = Cuts(self._make_cuts(), tuple(sorted(self._bounds or ())))
+    def _make_tally_as_seen(self, bounds: frozenset[int]) -> None:
+        """Make the tally of the files as they were looked over, even where one changes meanwhile."""
+        import duckdb
+
+        failure = None
+        try:
+            self._make_tally(bounds)
+        except duckdb.Error as error:
+            failure = error
+        if self._keep_as_seen():
+            self._make_tally(bounds)
+        elif failure is not None:
+            raise failure
+
+    def _make_tally(self, bounds: frozenset[int]) -> None:
+        cuts = Cuts(self._make_cuts(), tuple(sorted(bounds)))
+        lines = self.lines  # once: a file that changes from here on is read anew as a whole
         with _Polled(self.connection, self._options.progress):
-            self._odd = create_tally(self.connection, self.lines, cuts=cuts)
-            repeats = drop_repeated(self.connection, cuts=cuts)
+            self._odd = create_tally(self.connection, lines, cuts=cuts)
+            repeats = drop_repeated(self.connection, lines, cuts=cuts)
         self._ledger = self._count(repeats)
         self._tell("", 1)
 
@@ -293,7 +320,12 @@ class _Polled:
 
 def _has_changed(seen: Scan) -> bool:
     """Return whether a file that is read where it is has another size than when it was looked over."""
-    return not seen.copied and seen.path.stat().st_size != seen.stored_bytes
+    if seen.copied:
+        return False
+    try:
+        return seen.path.stat().st_size != seen.stored_bytes
+    except OSError:  # it is gone; to copy it will say so
+        return True
 
 
 def _setups(scans: list[Scan]) -> dict[str, list[Setup]]:

@@ -35,6 +35,10 @@ _S, _E, _T = b"set"  # of `setup`: looked for by byte, since a search of text is
 _LOOKERS = 2  # threads that look at blocks
 
 
+class EndlessLineError(FileError):
+    """A file with a line too long to be held."""
+
+
 @dataclass
 class Scan:
     """What was seen in one file, and the path under which the engine reads its clean lines."""
@@ -79,7 +83,7 @@ def scan(source: Source, path: Path, options: ScanOptions, *, only_bytes: int | 
     Raises
     ------
     FileError
-        Where the file cannot be read or the copy not be written.
+        Where the file cannot be read or the copy not be written, or a line is too long to be held.
     """
     if source.path is not None and source.path.is_file() and not source.packing and only_bytes is None:
         found = _look(Scan(source, path, copied=False), Text(source), options, None)
@@ -183,8 +187,8 @@ def _whole_lines(text: Text) -> Iterator[bytes]:
             kept.append(block[cut:])
             kept_bytes += len(block) - cut
         if kept_bytes > LONGEST_LINE_BYTES:
-            raise FileError(
-                f"{text.source.name}: a line of over {LONGEST_LINE_BYTES >> 20} MB: this is no text log; "
+            raise EndlessLineError(
+                f"{text.source.name}: it has a line of over {LONGEST_LINE_BYTES >> 20} MB, so it is no text log; "
                 "name the logs alone"
             )
     if kept:

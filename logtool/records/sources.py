@@ -50,7 +50,7 @@ def sources_of(paths: tuple[str | os.PathLike[str], ...]) -> list[Source]:
     names: list[str] = []
     for path in paths:
         name = os.fspath(path)
-        if name != STDIN and Path(name).is_dir():
+        if name != STDIN and os.path.isdir(name):  # not by `Path`, to which an empty name is the folder here
             names += _files_in(Path(name))
         else:
             names.append(name)
@@ -58,8 +58,8 @@ def sources_of(paths: tuple[str | os.PathLike[str], ...]) -> list[Source]:
     seen: set[str] = set()
     for name in sorted(set(names) - {STDIN}):
         file = Path(name)
-        if not file.exists():
-            raise FileError(f"{name}: there is no such file or folder; check the path")
+        if not os.path.exists(name):
+            raise FileError(f"{name}: there is no such file or folder, or no right to look; check the path")
         real = str(file.resolve())
         if real not in seen:
             seen.add(real)

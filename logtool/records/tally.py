@@ -30,6 +30,8 @@ _SPLIT = "string_split(line, chr(9))"
 # A group of the tally; `start_us` is the start of the hour, or of the piece of it after a cut.
 _KEYS = ("file", "start_us", "receiver", "dial_hz", "mode", "sender")
 _NAMES = ", ".join(_KEYS)
+# The engine's hash of a line alone is weak: lines that differ in their time and one more field share it.
+_HASH = "xor(hash(line), hash({time}))"
 _PLACED = f"length(locator) >= {OWN_LOCATOR_CHARACTERS}"
 _LOCATORS = f"list(locator) FILTER ({_PLACED})"
 _LISTS = f"""count(*) AS n, list((time_us % {HOUR_US})::UINTEGER) AS times, list(snr_db) AS snrs,
@@ -74,18 +76,16 @@ def create_tally(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cut
     Returns
     -------
     list of Odd
-        `tally` has the columns file, start_us (of the hour or the piece of it), receiver, dial_hz, mode, sender, n and the lists times (microseconds into the hour), snrs,
-        placed (whether there is an own locator) and hashes (of the lines), all of n in one order, and
-        locators (the own ones, in that order). `odd_records` (file, line, n) has the records that
+        `tally` has the columns file, start_us (of the hour or the piece of it), receiver, dial_hz, mode, sender, n and the lists times (microseconds into the hour), snrs
+        and hashes (of the lines), all of n in one order, and locators (the own ones). `odd_records` (file, line, n) has the records that
         are not in it.
     """
     source = f"""
-        SELECT file, CASE WHEN NOT quick THEN line END AS odd, hash(line) AS hash,
-            CASE WHEN quick THEN {_SPLIT} END AS f
-        FROM (SELECT file, line, {accepts_sql("heard")} AS quick FROM {lines})"""
+        SELECT file, CASE WHEN NOT quick THEN line END AS odd, {_HASH.format(time='f[1]')} AS hash, f
+        FROM (SELECT *, CASE WHEN quick THEN {_SPLIT} END AS f
+              FROM (SELECT file, line, {accepts_sql("heard")} AS quick FROM {lines}))"""
     connection.execute(
-        f"CREATE OR REPLACE TABLE tally AS SELECT odd, {_NAMES}, {_LISTS}, list(hash) AS hashes,"
-        f" list({_PLACED}) AS placed"
+        f"CREATE OR REPLACE TABLE tally AS SELECT odd, {_NAMES}, {_LISTS}, list(hash) AS hashes"
         f" FROM ({_fields_sql(source, cuts=cuts)}) GROUP BY odd, {_NAMES}"
     )
     odd = _judged(connection)
@@ -135,57 +135,82 @@ def _judged(connection: duckdb.DuckDBPyConnection) -> list[Odd]:
     return odd
 
 
-def drop_repeated(connection: duckdb.DuckDBPyConnection, *, cuts: Cuts) -> list[Repeats]:
+def drop_repeated(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cuts) -> list[Repeats]:
     """Count each record once, charge the others to the later files and return how many those have.
 
-    Then the receptions among the odd records move to the tally, and `hashes` and `placed` go. Two lines are
-    taken as equal where their 64-bit hashes are: docs/methods.md#repeated-lines.
+    Then the receptions among the odd records join the tally, and `hashes` goes. The engine's
+    hash only tells which lines may be equal; the lines themselves decide.
     """
     repeats = _drop_repeated_odd(connection)
-    hashes = connection.execute("SELECT unnest(hashes) AS hash FROM tally").fetchnumpy()["hash"]
-    hashes = np.sort(np.asarray(hashes, np.uint64))
-    twice = np.unique(hashes[1:][hashes[1:] == hashes[:-1]])
-    if len(twice):
-        connection.execute("CREATE OR REPLACE TEMP TABLE twice AS SELECT column0 AS hash FROM twice")
-        repeats += _drop_repeated_heard(connection)
+    candidates = _may_be_equal(connection)
+    if len(candidates):
+        connection.execute("CREATE OR REPLACE TEMP TABLE candidate AS SELECT column0 AS hash FROM candidates")
+        repeats += _drop_copies(connection, lines, cuts)
     connection.execute("ALTER TABLE tally DROP COLUMN hashes")
-    connection.execute("ALTER TABLE tally DROP COLUMN placed")
-    heard = f"SELECT file, {_SPLIT} AS f FROM odd_records WHERE {_SPLIT}[2] = 'heard'"
+    connection.execute(f"""
+        CREATE OR REPLACE TABLE odd_heard AS SELECT * FROM odd_records WHERE {_SPLIT}[2] = 'heard'""")
+    connection.execute(f"DELETE FROM odd_records WHERE {_SPLIT}[2] = 'heard'")
+    heard = f"SELECT file, {_SPLIT} AS f FROM odd_heard"
     connection.execute(
         f"INSERT INTO tally BY NAME SELECT {_NAMES}, {_LISTS}"
         f" FROM ({_fields_sql(heard, cuts=cuts)}) GROUP BY {_NAMES}"
     )
-    connection.execute(f"DELETE FROM odd_records WHERE {_SPLIT}[2] = 'heard'")
     return repeats
 
 
-def _drop_repeated_heard(connection: duckdb.DuckDBPyConnection) -> list[Repeats]:
-    """Rebuild the groups that hold a repeated line. The lists of a group are in one order."""
-    connection.execute("""
-        CREATE OR REPLACE TEMP TABLE member AS
-        WITH hit AS (
-            SELECT rowid AS row, * FROM tally WHERE rowid IN (
-                SELECT row FROM (SELECT rowid AS row, unnest(hashes) AS hash FROM tally) SEMI JOIN twice USING (hash))),
-        one AS (
-            SELECT row, file, hashes, locators, unnest(range(1, n + 1)) AS i, times[i] AS time, snrs[i] AS snr_db,
-                CASE WHEN placed[i] THEN locators[len(list_filter(placed[:i], lambda p: p))] END AS locator
-            FROM hit)
-        SELECT row, file, time, snr_db, locator,
-            row_number() OVER (PARTITION BY hashes[i] ORDER BY file) = 1 AS kept
-        FROM one""")
-    connection.execute("""
-        DELETE FROM tally WHERE rowid IN (SELECT row FROM member GROUP BY row HAVING NOT bool_or(kept))""")
+def _may_be_equal(connection: duckdb.DuckDBPyConnection) -> np.ndarray:
+    """Return the hashes that occur more than once."""
+    hashes = connection.execute("SELECT unnest(hashes) AS hash FROM tally").fetchnumpy()["hash"]
+    hashes = np.asarray(hashes, np.uint64)
+    hashes.sort()
+    return np.unique(hashes[1:][hashes[1:] == hashes[:-1]])
+
+
+def _drop_copies(connection: duckdb.DuckDBPyConnection, lines: str, cuts: Cuts) -> list[Repeats]:
+    """Take what repeated lines added out of their groups; return how many there are."""
+    copies = f"""
+        SELECT file, {_SPLIT} AS f, n - (file = min(file) OVER (PARTITION BY line))::INTEGER AS repeated
+        FROM (SELECT file, line, count(*) AS n FROM {lines}
+              WHERE {_HASH.format(time='split_part(line, chr(9), 1)')} IN (SELECT hash FROM candidate) AND {accepts_sql("heard")} GROUP BY ALL)"""
+    same = " AND ".join(f"tally.{name} = copy.{name}" for name in _KEYS)
     connection.execute(f"""
-        UPDATE tally SET n = again.n, times = again.times, snrs = again.snrs, locators = again.locators
-        FROM (SELECT row, count(*) AS n, list(time) AS times, list(snr_db) AS snrs, {_LOCATORS} AS locators
-              FROM member WHERE kept GROUP BY row) AS again
-        WHERE tally.rowid = again.row""")
+        CREATE OR REPLACE TEMP TABLE extra AS
+        SELECT tally.rowid AS row, copy.file, repeated, (time_us % {HOUR_US})::UINTEGER AS time, snr_db, locator
+        FROM ({_fields_sql(copies, cuts=cuts)}) AS copy JOIN tally ON {same} WHERE repeated > 0""")
+    connection.execute(f"""
+        UPDATE tally SET n = len(heard.times), times = heard.times, snrs = heard.snrs, locators = own.locators
+        FROM ({_without(times="time", snrs="snr_db")}) AS heard JOIN ({_without(locators="locator")}) AS own
+            USING (row)
+        WHERE tally.rowid = heard.row""")
+    connection.execute("DELETE FROM tally WHERE n = 0")
     return [
         Repeats(*row)
-        for row in connection.execute(
-            "SELECT file, count(*) FROM member WHERE NOT kept GROUP BY file"
-        ).fetchall()
+        for row in connection.execute("SELECT file, sum(repeated)::BIGINT FROM extra GROUP BY file").fetchall()
     ]
+
+
+def _without(**values: str) -> str:
+    """Return SQL for lists of the tally in the rows that `extra` names, less the values that it has.
+
+    The lists are named with the column of `extra` that holds their values; they are of one order and stay so.
+    """
+    columns = ", ".join(values.values())
+    lists = ", ".join(f"unnest({name}) AS {value}" for name, value in values.items())
+    same = " AND ".join(f"one.{value} IS NOT DISTINCT FROM less.{value}" for value in values.values())
+    kept = ", ".join(
+        f"coalesce(list(one.{value}) FILTER (nth > coalesce(gone, 0)), []) AS {name}"
+        for name, value in values.items()
+    )
+    return f"""
+        SELECT hit.row, {kept}
+        FROM (SELECT DISTINCT row FROM extra) AS hit
+            LEFT JOIN (
+                SELECT *, row_number() OVER (PARTITION BY row, {columns}) AS nth
+                FROM (SELECT rowid AS row, {lists} FROM tally WHERE rowid IN (SELECT row FROM extra))
+            ) AS one USING (row)
+            LEFT JOIN (SELECT row, {columns}, sum(repeated) AS gone FROM extra GROUP BY ALL) AS less
+                ON one.row = less.row AND {same}
+        GROUP BY hit.row"""
 
 
 def _drop_repeated_odd(connection: duckdb.DuckDBPyConnection) -> list[Repeats]:

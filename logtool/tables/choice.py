@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass
-from datetime import UTC, datetime
+from datetime import UTC, date, datetime
 
 from logtool.errors import UsageError
 from logtool.records.judge import EPOCH, time_of
@@ -100,7 +100,7 @@ def choose(
         if key not in BY_KEYS:
             raise UsageError(f"--by {key!r}: rows can be split by {', '.join(BY_KEYS)}")
     for name in _words(night):
-        if not re.fullmatch(r"\d{4}-\d{2}-\d{2}", name):
+        if not _is_date(name):
             raise UsageError(f"--night {name!r}: a night is named by the date it begins on, like 2026-03-01")
     for call in _words(sender):
         if not re.fullmatch(CALL_FORM, call):
@@ -117,6 +117,16 @@ def choose(
         by=_words(by),
         gap_min=gap_min,
     )
+
+
+def _is_date(name: str) -> bool:
+    if not re.fullmatch(r"[0-9]{4}-[0-9]{2}-[0-9]{2}", name):
+        return False
+    try:
+        date.fromisoformat(name)
+    except ValueError:
+        return False
+    return True
 
 
 def _words(given: tuple[str, ...] | str) -> tuple[str, ...]:

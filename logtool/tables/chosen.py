@@ -89,8 +89,8 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
     """Make the table `per_sender`: one row for each sender in each row of a table with the keys.
 
     It has the keys, sender, n, again, first_us, last_us, nights, place, locator, borrowed, distance_km,
-    uncertainty_km, bearing_deg, snr_median_db, snr_best_db, and the first and last mode by name of its
-    levels. Where `hour` is a key the locator is that of the hour, else it is found over the receptions.
+    uncertainty_km, bearing_deg, snr_median_db, snr_best_db, and the first and last mode and band by name of
+    its levels. Where `hour` is a key the locator is that of the hour, else it is found over the receptions.
 
     Parameters
     ----------
@@ -106,7 +106,7 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
         SELECT row_number() OVER () AS id, * FROM (
             SELECT {listed}, list(row) AS rows, sum(n)::BIGINT AS n, bool_or(again) AS again,
                 min(first_us) AS first_us, max(last_us) AS last_us, count(DISTINCT night) AS nights,
-                arg_max(place, last_us) AS place, any_value(locator) AS hour_locator,
+                arg_max(place, (last_us, place)) AS place, any_value(locator) AS hour_locator,
                 any_value(borrowed) AS hour_borrowed
             FROM heard WHERE sender <> '' GROUP BY {listed})""")
     connection.execute("""
@@ -114,9 +114,11 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
         WITH row_of AS (SELECT id, unnest(rows) AS row FROM of_sender),
         value AS (SELECT id, row, unnest(snrs)::DOUBLE AS snr_db FROM row_of JOIN tally ON tally.rowid = row),
         mode_of AS (
-            SELECT id, min(mode) AS first_mode, max(mode) AS last_mode
-            FROM row_of JOIN tally ON tally.rowid = row WHERE list_max(snrs) IS NOT NULL GROUP BY id)
-        SELECT id, snr_median_db, snr_best_db, first_mode, last_mode
+            SELECT id, min(mode) AS first_mode, max(mode) AS last_mode, min(band) AS first_band,
+                max(band) AS last_band
+            FROM row_of JOIN tally ON tally.rowid = row JOIN dial_band USING (dial_hz)
+            WHERE list_max(snrs) IS NOT NULL GROUP BY id)
+        SELECT id, snr_median_db, snr_best_db, first_mode, last_mode, first_band, last_band
         FROM (SELECT id, quantile_cont(snr_db, 0.5) AS snr_median_db, max(snr_db) AS snr_best_db
               FROM value GROUP BY id) JOIN mode_of USING (id)""")
     if "hour" in keys:
@@ -131,7 +133,8 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
         CREATE OR REPLACE TEMP TABLE per_sender AS
         SELECT of_sender.* EXCLUDE (rows, hour_locator, hour_borrowed), locator,
             CASE WHEN locator IS NOT NULL THEN borrowed END AS borrowed,
-            distance_km, uncertainty_km, bearing_deg, snr_median_db, snr_best_db, first_mode, last_mode
+            distance_km, uncertainty_km, bearing_deg, snr_median_db, snr_best_db, first_mode, last_mode,
+            first_band, last_band
         FROM of_sender LEFT JOIN row_locator USING (id) LEFT JOIN level USING (id)
             LEFT JOIN pair USING (place, locator)""")
 

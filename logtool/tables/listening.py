@@ -10,6 +10,7 @@ if TYPE_CHECKING:
     import duckdb
 
 MINUTE_US = 60_000_000
+BEFORE_ALL_US, AFTER_ALL_US = -(2**62), 2**62
 
 
 def make_stretches(connection: duckdb.DuckDBPyConnection, gap_min: float) -> None:
@@ -39,22 +40,27 @@ def make_stretches(connection: duckdb.DuckDBPyConnection, gap_min: float) -> Non
             SELECT w.receiver, w.dial_hz, from_us, end_us, least(end_us, h.time_us) AS to_us
             FROM watch w ASOF LEFT JOIN halted h ON w.receiver = h.receiver AND w.from_us < h.time_us),
         told AS (
-            SELECT r.receiver, coalesce([r.dial_hz], t.dials) AS dials, from_us, to_us
-            FROM recorded r ASOF LEFT JOIN tuned t ON r.receiver = t.receiver AND r.end_us > t.time_us),
+            SELECT r.receiver, CASE WHEN r.dial_hz IS NULL THEN t.dials ELSE [r.dial_hz] END AS dials,
+                from_us, to_us
+            FROM recorded r ASOF LEFT JOIN tuned t ON r.receiver = t.receiver AND r.end_us > t.since_us),
         instant AS (
             SELECT receiver, time_us FROM event
             UNION SELECT receiver, start_us // {HOUR_US} * {HOUR_US} + unnest(times) FROM tally),
         step AS (
-            SELECT receiver, time_us AS from_us,
-                lead(time_us) OVER (PARTITION BY receiver ORDER BY time_us) AS to_us
+            SELECT receiver, time_us, lag(time_us) OVER (PARTITION BY receiver ORDER BY time_us) AS before_us
             FROM instant ANTI JOIN watched USING (receiver)),
+        start AS (
+            SELECT s.receiver, s.time_us, before_us
+            FROM step s LEFT JOIN halted h ON s.receiver = h.receiver AND s.before_us = h.time_us
+            WHERE before_us IS NULL OR s.time_us - before_us > {gap_us} OR h.time_us IS NOT NULL),
+        latest AS (SELECT receiver, max(time_us) AS latest_us FROM step GROUP BY receiver),
         assumed AS (
-            SELECT s.receiver, s.from_us, s.to_us FROM step s
-            ANTI JOIN halted h ON s.receiver = h.receiver AND s.from_us = h.time_us
-            WHERE to_us - from_us <= {gap_us}),
+            SELECT receiver, time_us AS from_us, lead(before_us, 1, latest_us) OVER (
+                PARTITION BY receiver ORDER BY time_us) AS to_us
+            FROM start JOIN latest USING (receiver) QUALIFY to_us > from_us),
         guessed AS (
-            SELECT a.receiver, t.dials, from_us, to_us
-            FROM assumed a ASOF LEFT JOIN tuned t ON a.receiver = t.receiver AND a.from_us >= t.time_us),
+            SELECT a.receiver, dials, greatest(from_us, since_us) AS from_us, least(to_us, until_us) AS to_us
+            FROM assumed a JOIN tuned t ON a.receiver = t.receiver AND from_us < until_us AND to_us > since_us),
         piece AS (FROM told UNION ALL FROM guessed),
         banded AS (
             SELECT DISTINCT receiver, band, from_us, to_us
@@ -72,7 +78,7 @@ def make_stretches(connection: duckdb.DuckDBPyConnection, gap_min: float) -> Non
 
 
 def _make_tuned(connection: duckdb.DuckDBPyConnection) -> None:
-    """Make the table `tuned`: on which dials a receiver was at the instants that tell it."""
+    """Make the table `tuned`: receiver, since_us, until_us and the dials that it was on (null: not told)."""
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE tuned AS
         WITH told AS (
@@ -81,10 +87,19 @@ def _make_tuned(connection: duckdb.DuckDBPyConnection) -> None:
         dial AS (
             SELECT receiver, dial_hz, min(base_us + list_min(times)) AS time_us FROM told GROUP BY ALL),
         changing AS (SELECT receiver FROM dial GROUP BY receiver HAVING count(*) > 1),
-        instant AS (
+        one AS (
             SELECT receiver, dial_hz, time_us FROM dial ANTI JOIN changing USING (receiver)
-            UNION SELECT receiver, dial_hz, base_us + unnest(times) FROM told SEMI JOIN changing USING (receiver))
-        SELECT receiver, time_us, list_sort(list(dial_hz)) AS dials FROM instant GROUP BY ALL""")
+            UNION SELECT receiver, dial_hz, base_us + unnest(times) FROM told SEMI JOIN changing USING (receiver)),
+        instant AS (
+            SELECT receiver, time_us, list_sort(list(dial_hz)) AS dials FROM one GROUP BY ALL
+            UNION ALL SELECT DISTINCT receiver, {BEFORE_ALL_US}, NULL::VARCHAR[]
+            FROM (SELECT receiver FROM event UNION SELECT receiver FROM tally)),
+        change AS (
+            SELECT * FROM instant WINDOW w AS (PARTITION BY receiver ORDER BY time_us)
+            QUALIFY dials IS DISTINCT FROM lag(dials) OVER w OR row_number() OVER w = 1)
+        SELECT receiver, time_us AS since_us, dials,
+            lead(time_us, 1, {AFTER_ALL_US}) OVER (PARTITION BY receiver ORDER BY time_us) AS until_us
+        FROM change""")
 
 
 def make_listening(connection: duckdb.DuckDBPyConnection) -> None:

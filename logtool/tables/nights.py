@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 from logtool.places.nights import night_bounds
 from logtool.tables.choice import Choice, choose
 from logtool.tables.chosen import make_chosen, same
-from logtool.tables.reach import make_rows
+from logtool.tables.reach import SHARE_MIN, make_rows
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -26,17 +26,23 @@ def nights_table(logs: Logs, choice: Choice) -> Table:
     by = tuple(key for key in choice.by if key not in KEYS)
     keys = (*KEYS, *by)
     make_rows(connection, ("hour", *keys))
+    timed_keys = tuple(key for key in keys if key != "mode")
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE hourly AS
-        SELECT {", ".join(keys)}, avg(senders_in_30) AS senders_in_30 FROM row GROUP BY ALL""")
+        SELECT {", ".join(timed_keys)}, count(DISTINCT hour) AS hours FROM row
+        WHERE listening_min >= {SHARE_MIN} GROUP BY ALL""")
+    connection.execute(f"""
+        CREATE OR REPLACE TEMP TABLE thinned AS
+        SELECT {", ".join(keys)}, sum(senders_in_30) AS senders_in_30 FROM row GROUP BY ALL""")
     make_rows(connection, keys)
     order = ", ".join(f"row.{key} NULLS FIRST" for key in keys)
     table = Table.of(
         connection.execute(f"""
             SELECT {", ".join(f"row.{key}" for key in keys)}, row.lon_deg AS "from", row.lon_deg AS "to", listening_min,
-                listening, receptions, senders, hourly.senders_in_30, squares, median_km, p90_km, farthest_km,
-                farthest_sender
-            FROM row JOIN hourly ON {same("row", "hourly", keys)} ORDER BY {order}""")
+                listening, receptions, senders, coalesce(thinned.senders_in_30, 0) / hours AS senders_in_30, squares,
+                median_km, p90_km, farthest_km, farthest_sender
+            FROM row LEFT JOIN hourly ON {same("row", "hourly", timed_keys)}
+                LEFT JOIN thinned ON {same("row", "thinned", keys)} ORDER BY {order}""")
     )
     table.lon_deg = table.columns["from"]
     bounds = [

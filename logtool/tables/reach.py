@@ -54,7 +54,8 @@ FIGURES = f"""
     max(distance_km) FILTER (again) AS farthest_km,
     arg_min(sender, (-distance_km, sender)) FILTER (again AND distance_km IS NOT NULL) AS farthest_sender,
     max(distance_km) FILTER (NOT again) AS farthest_once_km,
-    CASE WHEN min(first_mode) = max(last_mode) THEN quantile_cont(snr_median_db, 0.5) END AS snr_median_db"""
+    CASE WHEN min(first_mode) = max(last_mode) AND min(first_band) = max(last_band)
+        THEN quantile_cont(snr_median_db, 0.5) END AS snr_median_db"""
 
 
 # Senders, each counted by its chance of being heard in 30 of the minutes listened.
@@ -76,14 +77,15 @@ def make_rows(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> N
         CREATE OR REPLACE TEMP TABLE counted AS
         WITH minutes AS (
             SELECT {timed}, sum(to_us - from_us) / {_MINUTE_US} AS listening_min, min(listening) AS first_way,
-                max(listening) AS last_way, arg_max(place, to_us) AS listened_at,
+                max(listening) AS last_way, arg_max(place, (to_us, place)) AS listened_at,
                 any_value(lon_deg) AS lon_deg
             FROM listened GROUP BY {timed}),
         receptions AS (
             SELECT {listed}, sum(n)::BIGINT AS receptions,
-                coalesce(sum(n) FILTER (sender = ''), 0)::BIGINT AS unnamed, arg_max(place, last_us) AS heard_at,
-                min(first_us) AS first_us, max(last_us) AS last_us, min(listening) AS first_way,
-                max(listening) AS last_way, any_value(lon_deg) AS lon_deg
+                coalesce(sum(n) FILTER (sender = ''), 0)::BIGINT AS unnamed,
+                arg_max(place, (last_us, place)) AS heard_at, min(first_us) AS first_us,
+                max(last_us) AS last_us, min(listening) AS first_way, max(listening) AS last_way,
+                any_value(lon_deg) AS lon_deg
             FROM heard GROUP BY {listed})
         SELECT {", ".join(f"coalesce(r.{key}, m.{key}) AS {key}" if key != "mode" else "mode" for key in keys)},
             coalesce(listening_min, 0) AS listening_min,

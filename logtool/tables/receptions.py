@@ -32,7 +32,7 @@ def make_receptions(logs: Logs, choice: Choice) -> None:
     field = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
     lines = f"""
         SELECT file, line FROM {logs.lines} WHERE {accepts_sql("heard")}
-        UNION ALL SELECT file, line FROM odd_records WHERE string_split(line, chr(9))[2] = 'heard'"""
+        UNION ALL FROM odd_heard"""
     if any(file.repeated for file in logs.inputs):
         lines = f"SELECT min(file) AS file, line FROM ({lines}) GROUP BY line"
     where = " AND ".join(conditions(choice, of_receptions=True))

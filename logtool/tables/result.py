@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from datetime import timedelta
 from typing import TYPE_CHECKING, Any
 
+from logtool.places.wgs84 import TURN_DEG
 from logtool.records.judge import EPOCH
 
 if TYPE_CHECKING:
@@ -32,13 +33,15 @@ def written_time(time_us: int) -> str:
 def output_value(name: str, value: Any) -> Any:
     """Return a value of a column as it leaves the program: times written, numbers rounded.
 
-    >>> output_value("distance_km", 1234.56789), output_value("bearing_deg", 0.00004)
+    >>> output_value("distance_km", 1234.56789), output_value("bearing_deg", 359.99996)
     (1234.568, 0.0)
     """
     if value is None:
         return None
     if name in TIME_COLUMNS:
         return written_time(value)
+    if name == "bearing_deg":
+        return round(value, DEGREE_DECIMALS) % TURN_DEG
     if isinstance(value, float):
         return round(value, DEGREE_DECIMALS if name.endswith("_deg") else DECIMALS) + 0.0
     return value

@@ -50,7 +50,7 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     wanted = (logs.read_times, choice.gap_min)
     if logs.rolled_up_for == wanted:
         return connection
-    _make_events(connection)
+    _make_events(logs)
     _make_bands(connection)
     make_stretches(connection, choice.gap_min)
     _make_spots(logs)
@@ -64,7 +64,9 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     return connection
 
 
-def _make_events(connection: duckdb.DuckDBPyConnection) -> None:
+def _make_events(logs: Logs) -> None:
+    """Make the table `event` of all records but receptions; of setups, those in force."""
+    connection = logs.connection
     field = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE event AS
@@ -72,7 +74,13 @@ def _make_events(connection: duckdb.DuckDBPyConnection) -> None:
             nullif({field["dial_hz"]}, '') AS dial_hz,
             (nullif(regexp_extract({field["more"]}, '(?:^|; )on_s=([^;]+)', 1), '')::DECIMAL(12, 6)
                 * {_SECOND_US})::BIGINT AS on_us
-        FROM (SELECT string_split(line, chr(9)) AS f FROM odd_records) WHERE f[2] <> 'heard'""")
+        FROM (SELECT string_split(line, chr(9)) AS f FROM odd_records)
+        WHERE f[2] <> 'setup'""")
+    held = [setup for setups in logs.setups.values() for setup in setups]
+    columns = {"receiver": "VARCHAR", "time_us": "BIGINT", "dial_hz": "VARCHAR"}
+    values = [[str(getattr(setup, name)) for setup in held] for name in columns]
+    create_table(connection, "held", columns, values)
+    connection.execute("INSERT INTO event BY NAME SELECT 'setup' AS kind, * FROM held")
 
 
 def _make_bands(connection: duckdb.DuckDBPyConnection) -> None:

@@ -11,6 +11,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import UTC, date, datetime, timedelta
 from functools import cache
+from itertools import pairwise
 
 from logtool.places.bands import band_name
 from logtool.places.geodesic import distance_km
@@ -52,6 +53,9 @@ class Reception:
     text: str
     night: str
     listening: str
+    file: str
+    line: int
+    raw: str
     again: bool = False
     hour_locator: str | None = None
     borrowed: bool = False
@@ -134,7 +138,12 @@ def make_world(
     gap_min: float = 10.0,
 ) -> World:
     """Read the files in the order given and learn what there is to learn."""
-    records = [record for account in read_files(files) for _, _, record in account.records]
+    found = [
+        (account.name, number, raw, record)
+        for account in read_files(files)
+        for number, raw, record in account.records
+    ]
+    records = [record for _, _, _, record in found]
     setups: dict[str, dict[int, Record]] = defaultdict(dict)
     for record in records:
         if record.kind == "setup":
@@ -145,7 +154,7 @@ def make_world(
         places[receiver] = _places(receiver, setups.get(receiver, {}), at, antenna_name)
 
     receptions = []
-    for record in records:
+    for file, number, raw, record in found:
         if record.kind != "heard":
             continue
         place = [held for since_us, held in places[record.receiver] if since_us <= us(record)][-1]
@@ -158,6 +167,7 @@ def make_world(
                 None if record.snr_db is None else float(record.snr_db), record.text,
                 night_at(us(record) // HOUR_US, place.lon_deg),
                 "recorded" if record.receiver in watched else "assumed",
+                file, number, raw.decode(),
             )
         )  # fmt: skip
     world = World(receptions, [], _hour_locators(receptions))
@@ -257,7 +267,7 @@ def _assumed(own: list[Record], tuned: list[tuple[int, int | None]], gap_min: fl
     stops = {us(record) for record in own if record.kind == "stop"}
     instants = sorted({us(record) for record in own})
     stretches: Stretches = defaultdict(list)
-    for from_us, to_us in zip(instants, instants[1:], strict=False):
+    for from_us, to_us in pairwise(instants):
         if from_us in stops or to_us - from_us > gap_min * MINUTE_US:
             continue
         for dial in _dials(tuned, from_us):
@@ -282,7 +292,7 @@ def _cut(
     cuts = {hour * HOUR_US for hour in hours} | {since_us for since_us, _ in places}
     ends = sorted({from_us, to_us} | {cut for cut in cuts if from_us < cut < to_us})
     spells = []
-    for start_us, stop_us in zip(ends, ends[1:], strict=False):
+    for start_us, stop_us in pairwise(ends):
         place = [held for since_us, held in places if since_us <= start_us][-1]
         spells.append(
             Spell(start_us, stop_us, place, band, night_at(start_us // HOUR_US, place.lon_deg), way)

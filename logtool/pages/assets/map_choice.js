@@ -53,15 +53,16 @@ logtoolMap.choice = (() => {
   function heard(model, choice) {
     const fits = model.groups.map((group) => groupFits(model, choice, group));
     const hourly = model.groups.map((group) => model.hours.map((hour) => hourFits(choice, hour, group.receiver)));
-    const { size, sender, group, hour, receptions, snr } = model.counts;
+    const { size, sender, group, hour, receptions, snr, unplaced } = model.counts;
     const found = new Map();
     for (let row = 0; row < size; row++) {
       const g = group[row];
       if (!fits[g] || (choice.hour !== null && hour[row] !== choice.hour) || !hourly[g][hour[row]]) continue;
       let one = found.get(sender[row]);
-      if (!one) found.set(sender[row], one = { sender: model.senders[sender[row]], receptions: 0, groups: [], rows: [] });
+      if (!one) found.set(sender[row], one = { sender: model.senders[sender[row]], receptions: 0, groups: [], rows: [], placed: false });
       one.receptions += receptions[row];
       if (!one.groups.includes(g)) one.groups.push(g);
+      one.placed = one.placed || !unplaced.has(row);
       one.rows.push([snr[row], receptions[row]]);
     }
     const whole = choice.hour === null && choice.night === ALL;
@@ -75,13 +76,14 @@ logtoolMap.choice = (() => {
     one.snr = one.mixed ? null : exact ? exact.snr : weightedMedian(one.rows);
     const by = new Set(one.groups.map((group) => model.groups[group].receiver));
     one.pairs = one.sender.pairs.filter((pair) => by.has(pair.receiver));
-    one.km = one.pairs.reduce((least, { km }) => (km !== null && (least === null || km < least) ? km : least), null);
+    one.placed = one.placed && one.sender.cell !== null;
+    one.km = !one.placed ? null : one.pairs.reduce((least, { km }) => (km !== null && (least === null || km < least) ? km : least), null);
     delete one.rows;
   }
 
-  // Those with a place, as circles and, past the first CIRCLES, as counts in cells of 4 characters.
+  // Those with a place in what is chosen, as circles and, past the first CIRCLES, as counts in cells of 4 characters.
   function placed(senders) {
-    const located = senders.filter((one) => one.sender.cell);
+    const located = senders.filter((one) => one.placed);
     const cells = new Map();
     for (const one of located.slice(CIRCLES)) {
       const south = Math.floor(one.sender.lat), west = 2 * Math.floor(one.sender.lon / 2);
@@ -96,7 +98,7 @@ logtoolMap.choice = (() => {
   // The farthest distance in each of 16 sectors of bearing, sector k centred at 22.5 k degrees; null where none.
   function farthest(senders, receiver) {
     const out = new Array(16).fill(null);
-    for (const one of senders) {
+    for (const one of senders.filter(({ placed }) => placed)) {
       for (const { receiver: by, bearing, km } of one.pairs) {
         if (by !== receiver || bearing === null || km === null) continue;
         const k = Math.floor((bearing + 11.25) / 22.5) % 16;

@@ -100,9 +100,9 @@ logtoolMap.controls = (() => {
 
   function listened(model, hour, receiver) {
     if (!hour.listening.length) return "";
-    const minutes = hour.listening[receiver], { name } = model.receivers[receiver];
-    if (minutes === null || minutes === undefined) return `; ${name}: listening not recorded`;
-    return minutes > 0 ? `; ${name} listened ${number(minutes)} min` : `; ${name} did not listen`;
+    const minutes = hour.listening[receiver], { name, assumed } = model.receivers[receiver];
+    if (minutes === null || minutes === undefined) return `; ${name}: listening not ${assumed ? "known" : "recorded"}`;
+    return minutes > 0 ? `; ${name} listened ${number(minutes)} min${assumed ? " (assumed)" : ""}` : `; ${name} did not listen`;
   }
 
   // UTC, the mean solar time at each receiver drawn, and how long it listened.

@@ -25,6 +25,7 @@ logtoolMap.model = (() => {
       hour: new Int32Array(size),
       receptions: Int32Array.from(packed.receptions),
       snr: packed.snr,
+      unplaced: new Set(packed.unplaced),
     };
     for (let i = 0, row = 0; i < packed.runs.length; i += 3) {
       for (let n = 0, hour = 0; n < packed.runs[i + 2]; n++, row++) {
@@ -63,9 +64,9 @@ logtoolMap.model = (() => {
       notes: data.notes,
       ledger: data.ledger,
       options: data.options,
-      receivers: data.receivers.map(([name, locator, cell, rings]) => {
+      receivers: data.receivers.map(([name, locator, cell, rings, assumed]) => {
         const [lat, lon] = middle(cell);
-        return { name, locator, cell, lat, lon, rings: rings.map(([km, lats, lons]) => ({ km, lats, lons })) };
+        return { name, locator, cell, lat, lon, assumed: assumed === 1, rings: rings.map(([km, lats, lons]) => ({ km, lats, lons })) };
       }),
       senders: data.senders.map(([name, locator, cell, borrowed], index) => {
         const [lat, lon] = middle(cell) || [null, null];
@@ -75,8 +76,8 @@ logtoolMap.model = (() => {
       hours: data.hours.map(([start, sunLat, sunLon, nights, listening]) => ({ start, sunLat, sunLon, nights, listening })),
       counts: counts(data.counts),
     };
-    model.pairs = data.pairs.map(([sender, receiver, km, uncertainty, bearing, first, last, again, flat]) => ({
-      sender, receiver, km, uncertainty, bearing, again: again === 1,
+    model.pairs = data.pairs.map(([sender, receiver, km, uncertainty, bearing, first, last, again, flat, locator]) => ({
+      sender, receiver, km, uncertainty, bearing, locator, again: again === 1,
       first: time(first), last: time(last), lines: lines(flat, data.files),
     }));
     for (const pair of model.pairs) model.senders[pair.sender].pairs.push(pair);

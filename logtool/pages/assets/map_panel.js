@@ -45,6 +45,7 @@ logtoolMap.panel = (() => {
     const totals = model.senders[pair.sender].totals.filter((total) => model.groups[total.group].receiver === pair.receiver);
     part.append(make("h3", `At ${model.receivers[pair.receiver].name}`));
     part.append(figures([
+      ...(pair.locator ? [["Locator heard here", pair.locator]] : []),
       ["Distance", distance(pair)],
       ["Bearing", pair.bearing === null ? "not known" : `${number(pair.bearing)}\u00b0`],
       ["Receptions", number(totals.reduce((sum, total) => sum + total.receptions, 0))],
