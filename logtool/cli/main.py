@@ -26,8 +26,27 @@ EXIT_INTERRUPTED = 130
 EXIT_FAILED = 3
 
 
+class _InterruptedError(Exception):
+    """Ctrl-C during a command."""
+
+
+class _PipeClosedError(Exception):
+    """Whoever read the output has had enough."""
+
+
 class _Commands(click.Group):
     """A group that imports a command when it is called and lists all without importing any."""
+
+    def invoke(self, ctx: click.Context) -> object:
+        """Run a command, its interrupts and broken pipes kept from click, which would end them its way."""
+        try:
+            status = super().invoke(ctx)
+            sys.stdout.flush()
+        except KeyboardInterrupt as error:
+            raise _InterruptedError from error
+        except BrokenPipeError as error:
+            raise _PipeClosedError from error
+        return status
 
     def list_commands(self, ctx: click.Context) -> list[str]:
         return list(COMMANDS)
@@ -59,13 +78,11 @@ def main() -> None:
     except click.ClickException as error:
         error.show()
         status = error.exit_code
-    except click.Abort:
-        status = EXIT_INTERRUPTED
-    except KeyboardInterrupt:
+    except (click.Abort, KeyboardInterrupt, _InterruptedError):
         click.echo("logtool: interrupted; nothing half written is left", err=True)
         status = EXIT_INTERRUPTED
-    except BrokenPipeError:
-        # Whoever read the output has had enough; nothing may complain when the pipe is flushed at exit.
+    except (BrokenPipeError, _PipeClosedError):
+        # Nothing may complain either when what is left is flushed at the end.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         status = 0
     except LogtoolError as error:

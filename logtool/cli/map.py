@@ -11,6 +11,7 @@ from logtool.cli import options
 from logtool.cli.run import choice_of, opened, status_of, told_options
 
 STANDARD_OUTPUT = "-"
+_NOT_TOLD = ("out", "set_aside", "quiet", "title")  # paths of the maker's machine, and what changes no figure
 
 
 @click.command("map")
@@ -33,9 +34,9 @@ def command(**words: Any) -> int:
     choice = choice_of(words)
     with opened(words, with_digest=False) as logs:
         told = [
-            (name, str(value))
+            (name, ", ".join(value) if isinstance(value, list) else str(value))
             for name, value in told_options(words).items()
-            if value not in (None, [], False)
+            if name not in _NOT_TOLD and value not in (None, [], False)
         ]
         page = map_text(logs, choice, title=words["title"], options=told)
         if words["out"] == STANDARD_OUTPUT:

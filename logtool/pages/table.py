@@ -11,7 +11,6 @@ from logtool.places.nights import local_mean_time
 from logtool.records.ledger import FileLedger
 from logtool.tables.result import Table, written_time
 
-WIDE = 500  # columns of a page that is no terminal
 BAR_CELLS = 10
 EIGHTHS = " ▏▎▍▌▋▊▉"
 MOST_ROWS = 40  # shown on a terminal without --all
@@ -209,7 +208,7 @@ def write_table(out: IO[str], name: str, table: Table, inputs: list[FileLedger],
     from rich.console import Console
 
     terminal = out is sys.stdout and out.isatty()
-    console = Console(file=out, width=None if terminal else WIDE, highlight=False, markup=False)
+    console = Console(file=out, highlight=False, markup=False)
     kept, left_out = _kept_rows(name, table, limited=terminal and not show_all)
     columns = _columns(name, table)
     cells = {
@@ -227,12 +226,17 @@ def write_table(out: IO[str], name: str, table: Table, inputs: list[FileLedger],
     if terminal and not show_all:
         columns = _that_fit(columns, cells, console.width)
         _cut_to_fit(columns, cells, console.width)
-    if kept:
+    if not kept:
+        out.write("no line was set aside\n" if name == "check" else "no rows\n")
+    elif terminal:
         _print_rows(console, columns, cells)
     else:
-        console.print("no line was set aside" if name == "check" else "no rows")
+        _write_rows(out, columns, cells)
     for line in [*left_out, *_below(table), *_read(inputs)]:
-        console.print(line, soft_wrap=not terminal)
+        if terminal:
+            console.print(line)
+        else:
+            out.write(f"{line}\n")
 
 
 def _kept_rows(name: str, table: Table, *, limited: bool) -> tuple[list[int], list[str]]:
@@ -278,18 +282,25 @@ def _mark_near(cells: dict[str, list[str]], table: Table, kept: list[int]) -> No
             cells["distance_km"][row] = f"< {_whole(uncertainty_km)}"
 
 
-def _width(column: Shown, cells: dict[str, list[str]]) -> int:
+def _width(column: Shown, cells: dict[str, list[str]], *, cut: bool = False) -> int:
     width = max(map(len, [*column.header.split(), *cells[column.name]])) + 2
-    return min(width, FLEXIBLE_CELLS) if column.name in FLEXIBLE else width
+    return min(width, FLEXIBLE_CELLS) if cut and column.name in FLEXIBLE else width
+
+
+def _head(column: Shown, cells: dict[str, list[str]]) -> list[str]:
+    """Return the header in lines: one where the column is wide enough, else a word a line."""
+    longest = max(map(len, cells[column.name]))
+    return [column.header] if longest >= len(column.header) else column.header.split(" ")
 
 
 def _that_fit(columns: list[Shown], cells: dict[str, list[str]], width: int) -> list[Shown]:
     room = width
     fitting = set()
     for column in sorted(columns, key=lambda column: column.rank):
-        if _width(column, cells) <= room or column.rank == 0:
+        width = _width(column, cells, cut=True)
+        if width <= room or column.rank == 0:
             fitting.add(column.name)
-            room -= _width(column, cells)
+            room -= width
     return [column for column in columns if column.name in fitting]
 
 
@@ -310,9 +321,8 @@ def _print_rows(console: Any, columns: list[Shown], cells: dict[str, list[str]])
 
     grid = RichTable(box=None, pad_edge=False, header_style="bold", padding=(0, 2, 0, 0))
     for column in columns:
-        longest = max(map(len, cells[column.name]))
         grid.add_column(
-            column.header if longest >= len(column.header) else column.header.replace(" ", "\n"),
+            "\n".join(_head(column, cells)),
             justify="right" if column.right else "left",
             no_wrap=True,
             overflow="ellipsis",
@@ -321,6 +331,23 @@ def _print_rows(console: Any, columns: list[Shown], cells: dict[str, list[str]])
     for row in zip(*(cells[column.name] for column in columns), strict=True):
         grid.add_row(*(Text(cell) for cell in row))
     console.print(grid)
+
+
+def _write_rows(out: IO[str], columns: list[Shown], cells: dict[str, list[str]]) -> None:
+    """Write the rows as plain text: a terminal's table takes a thousand times as long."""
+    widths = [_width(column, cells) - 2 for column in columns]
+    sides = [str.rjust if column.right else str.ljust for column in columns]
+    heads = [_head(column, cells) for column in columns]
+    depth = max(map(len, heads))
+    for row in zip(*([""] * (depth - len(head)) + head for head in heads), strict=True):
+        out.write(_line(row, sides, widths))
+    for row in zip(*(cells[column.name] for column in columns), strict=True):
+        out.write(_line(row, sides, widths))
+
+
+def _line(row: tuple[str, ...], sides: list[Callable[[str, int], str]], widths: list[int]) -> str:
+    padded = [side(cell, width) for side, cell, width in zip(sides, row, widths, strict=True)]
+    return "  ".join(padded).rstrip() + "\n"
 
 
 def _below(table: Table) -> list[str]:
@@ -347,12 +374,16 @@ def _below(table: Table) -> list[str]:
     return lines
 
 
+def _some(count: int, what: str) -> str:
+    return f"{_count(count)} {what}{'' if count == 1 else 's'}"
+
+
 def _read(inputs: list[FileLedger]) -> list[str]:
     aside = sum(file.set_aside for file in inputs)
     told = (
-        f"read {_count(len(inputs))} {'file' if len(inputs) == 1 else 'files'}, "
-        f"{_count(sum(file.lines for file in inputs))} lines: "
-        f"{_count(sum(file.records for file in inputs))} records, "
+        f"read {_some(len(inputs), 'file')}, "
+        f"{_some(sum(file.lines for file in inputs), 'line')}: "
+        f"{_some(sum(file.records for file in inputs), 'record')}, "
         f"{_count(sum(file.repeated for file in inputs))} repeated, {_count(aside)} set aside"
     )
     return [told + (" (logtool check shows them)" if aside else "")]

@@ -177,8 +177,9 @@ class Logs:
             for i, scan in enumerate(self._scans)
             for number, reason, line in scan.set_aside
         ]
+        paths = self.paths
         for i, reasons in wanted.items():
-            found += [(i, n, reasons[line], line) for n, line in line_numbers(self.paths[i], reasons)]
+            found += [(i, n, reasons[line], line) for n, line in line_numbers(paths[i], reasons)]
         return [(self.file_names[i], n, reason, line) for i, n, reason, line in sorted(found)]
 
     def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:

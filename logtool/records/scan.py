@@ -29,7 +29,7 @@ STRANGER_LINES = 10_000  # a file with so many lines and no record is something 
 LONGEST_LINE_BYTES = 64 << 20  # held in memory at most; our choice
 _WINDOW_BYTES = MAX_LINE_BYTES // 2  # a line over the limit covers at least one whole window with no LF
 _SHOWN_CHARACTERS = 60
-_LINE_BREAKER = re.compile(rb"\x01|\r(?!\n)")
+_LINE_BREAKER = re.compile(rb"(?:\x01|\r(?!\n))[^\n]*")  # to the line's end: one a line is enough
 _LF, _CR = b"\n\r"
 _S, _E, _T = b"set"  # of `setup`: looked for by byte, since a search of text is five times slower
 _LOOKERS = 2  # threads that look at blocks
@@ -188,8 +188,8 @@ def _whole_lines(text: Text) -> Iterator[bytes]:
             kept_bytes += len(block) - cut
         if kept_bytes > LONGEST_LINE_BYTES:
             raise EndlessLineError(
-                f"{text.source.name}: it has a line of over {LONGEST_LINE_BYTES >> 20} MB, so it is no text log; "
-                "name the logs alone"
+                f"{text.source.name}: it has a line of over {LONGEST_LINE_BYTES >> 20} MB, "
+                "so it is no text log; name the logs alone"
             )
     if kept:
         yield b"".join(kept)
@@ -222,8 +222,11 @@ def _taken_out(found: Scan, block: bytes) -> bytes:
     after = np.flatnonzero(np.frombuffer(block, np.uint8) == _LF) + 1  # the starts of all lines but one
     starts = np.concatenate(([0], after[after < len(block)]))
     stops = np.concatenate((starts[1:], [len(block)]))
-    spots = [match.start() for match in _LINE_BREAKER.finditer(block)] + _bad_utf8(block)
+    spots = [match.start() for match in _LINE_BREAKER.finditer(block)]
     taken = set((np.searchsorted(starts, spots, side="right") - 1).tolist())
+    if not _is_utf8(block):
+        bounds = enumerate(zip(starts.tolist(), stops.tolist(), strict=True))
+        taken |= {i for i, (start, stop) in bounds if not _is_utf8(block[start:stop])}
     taken |= set(np.flatnonzero(stops - starts > MAX_LINE_BYTES + len(b"\r\n")).tolist())
     pieces = []
     kept_from = 0
@@ -235,24 +238,6 @@ def _taken_out(found: Scan, block: bytes) -> bytes:
         pieces += [block[kept_from:start], b"\n"]
         kept_from = stop
     return b"".join([*pieces, block[kept_from:]])
-
-
-def _bad_utf8(block: bytes) -> list[int]:
-    """Return the offsets of bytes that are not UTF-8; one a line is enough, more do no harm."""
-    spots = []
-    start = 0
-    while True:
-        try:
-            block[start:].decode() if start else block.decode()
-        except UnicodeDecodeError as error:
-            spot = start + error.start
-            spots.append(spot)
-            end = block.find(b"\n", spot)
-            if end < 0:
-                return spots
-            start = end + 1
-        else:
-            return spots
 
 
 def _settle(found: Scan, number: int, line: bytes) -> None:

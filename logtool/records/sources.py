@@ -107,7 +107,8 @@ class Text:
                     yield from self._stored(file)
         except OSError as error:
             raise FileError(
-                f"{self.source.name}: cannot be read ({error.strerror or error}); check the file and its rights"
+                f"{self.source.name}: cannot be read ({error.strerror or error}); "
+                "check the file and its rights"
             ) from error
 
     def _open(self) -> IO[bytes]:

@@ -11,7 +11,7 @@ from logtool.records.judge import EPOCH, time_of
 from logtool.records.layout import CALL_FORM
 
 GAP_MIN = 10.0  # records so far apart still mean listening, where no watch says so; design, section 4
-LEAST_GAP_MIN = 0.1
+LEAST_GAP_MIN, GREATEST_GAP_MIN = 0.1, 10_080.0  # up to a week; our choice
 BY_KEYS = ("antenna", "band", "mode", "night", "receiver")
 NO_ANTENNA = "none"  # left out of every figure except where it is asked for
 
@@ -94,8 +94,10 @@ def choose(
     to_us = None if to is None else instant(to, "--to")
     if from_us is not None and to_us is not None and from_us >= to_us:
         raise UsageError(f"--from {from_} is not before --to {to}; --to itself is not counted any more")
-    if not gap_min >= LEAST_GAP_MIN:
-        raise UsageError(f"--gap-min {gap_min:g} is too short; give {LEAST_GAP_MIN:g} minutes or more")
+    if not LEAST_GAP_MIN <= gap_min <= GREATEST_GAP_MIN:
+        raise UsageError(
+            f"--gap-min {gap_min:g} cannot be used; give {LEAST_GAP_MIN:g} to {GREATEST_GAP_MIN:g} minutes"
+        )
     for key in _words(by):
         if key not in BY_KEYS:
             raise UsageError(f"--by {key!r}: rows can be split by {', '.join(BY_KEYS)}")

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from logtool.places.nights import night_name
 from logtool.records.engine import among
 from logtool.records.quick import sql_text
 from logtool.tables.choice import NO_ANTENNA, Choice
@@ -14,6 +15,9 @@ if TYPE_CHECKING:
     import duckdb
 
     from logtool.records.reader import Logs
+
+
+MOST_NAMED = 20  # names that a note lists; our choice
 
 
 def make_chosen(logs: Logs, choice: Choice) -> tuple[duckdb.DuckDBPyConnection, list[str]]:
@@ -66,17 +70,24 @@ def unknown_words(connection: duckdb.DuckDBPyConnection, choice: Choice) -> list
         "antenna": choice.antennas,
         "band": choice.bands,
         "mode": choice.modes,
+        "night": choice.nights,
+        "sender": choice.senders,
     }
     for key, words in chosen.items():
         if not words:
             continue
-        also = "" if key == "mode" else f" UNION SELECT {key} FROM listening"
-        there = [row[0] for row in connection.execute(f"SELECT {key} FROM rollup{also}").fetchall()]
-        known = sorted({word for word in there if word})
+        also = "" if key in ("mode", "sender") else f" UNION SELECT {key} FROM listening"
+        there = [row[0] for row in connection.execute(f"SELECT DISTINCT {key} FROM rollup{also}").fetchall()]
+        known = sorted({night_name(word) if key == "night" else word for word in there if word})
         plain = {word.split("@")[0] for word in known} if key == "receiver" else set()
+        some = (
+            known
+            if len(known) <= MOST_NAMED
+            else [*known[:MOST_NAMED], f"and {len(known) - MOST_NAMED} more"]
+        )
         for word in words:
             if word not in known and word not in plain:
-                notes.append(f"no {key} {word!r} in the inputs; there are: {', '.join(known) or 'none'}")
+                notes.append(f"no {key} {word!r} in the inputs; there are: {', '.join(some) or 'none'}")
     return notes
 
 
@@ -109,18 +120,7 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
                 arg_max(place, (last_us, place)) AS place, any_value(locator) AS hour_locator,
                 any_value(borrowed) AS hour_borrowed
             FROM heard WHERE sender <> '' GROUP BY {listed})""")
-    connection.execute("""
-        CREATE OR REPLACE TEMP TABLE level AS
-        WITH row_of AS (SELECT id, unnest(rows) AS row FROM of_sender),
-        value AS (SELECT id, row, unnest(snrs)::DOUBLE AS snr_db FROM row_of JOIN tally ON tally.rowid = row),
-        mode_of AS (
-            SELECT id, min(mode) AS first_mode, max(mode) AS last_mode, min(band) AS first_band,
-                max(band) AS last_band
-            FROM row_of JOIN tally ON tally.rowid = row JOIN dial_band USING (dial_hz)
-            WHERE list_max(snrs) IS NOT NULL GROUP BY id)
-        SELECT id, snr_median_db, snr_best_db, first_mode, last_mode, first_band, last_band
-        FROM (SELECT id, quantile_cont(snr_db, 0.5) AS snr_median_db, max(snr_db) AS snr_best_db
-              FROM value GROUP BY id) JOIN mode_of USING (id)""")
+    _make_levels(connection)
     if "hour" in keys:
         connection.execute("""
             CREATE OR REPLACE TEMP TABLE row_locator AS
@@ -137,6 +137,28 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
             first_band, last_band
         FROM of_sender LEFT JOIN row_locator USING (id) LEFT JOIN level USING (id)
             LEFT JOIN pair USING (place, locator)""")
+
+
+def _make_levels(connection: duckdb.DuckDBPyConnection) -> None:
+    """Make the table `level`: for each id of `of_sender` its SNRs' median and best, modes and bands.
+
+    Most have their values in one list; the lists of the others are taken together.
+    """
+    connection.execute("""
+        CREATE OR REPLACE TEMP TABLE level AS
+        WITH row_of AS (SELECT id, len(rows) = 1 AS single, unnest(rows) AS row FROM of_sender),
+        part AS (
+            SELECT id, single, snrs, list_max(snrs)::DOUBLE AS best_db, mode, band
+            FROM row_of JOIN tally ON tally.rowid = row JOIN dial_band USING (dial_hz)
+            WHERE list_max(snrs) IS NOT NULL),
+        median AS (
+            SELECT id, list_aggregate(snrs, 'quantile_cont', 0.5)::DOUBLE AS snr_median_db FROM part WHERE single
+            UNION ALL
+            SELECT id, quantile_cont(snr_db, 0.5) FROM (
+                SELECT id, unnest(snrs)::DOUBLE AS snr_db FROM part WHERE NOT single) GROUP BY id)
+        SELECT id, any_value(snr_median_db) AS snr_median_db, max(best_db) AS snr_best_db,
+            min(mode) AS first_mode, max(mode) AS last_mode, min(band) AS first_band, max(band) AS last_band
+        FROM part JOIN median USING (id) GROUP BY id""")
 
 
 def _make_row_locators(connection: duckdb.DuckDBPyConnection) -> None:

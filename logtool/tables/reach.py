@@ -25,6 +25,10 @@ P90_SENDERS = 5  # the 90th percentile needs so many located senders; design, se
 MIXED = "mixed"  # listening is recorded for a part of the row, assumed for the other
 HALF_HOUR_S = 1800.0
 _MINUTE_US = 60_000_000
+# What the summary says where nothing is counted.
+_NOTHING = dict.fromkeys(
+    ("listening_min", "receptions", "unnamed", "senders", "heard_once", "located", "squares"), 0
+)
 COLUMNS = (
     "listening_min",
     "listening",
@@ -141,7 +145,7 @@ def _summary(connection: duckdb.DuckDBPyConnection, table: Table) -> dict[str, A
     whole = Table.of(
         connection.execute(f'SELECT first_us AS "from", last_us AS "to", {", ".join(COLUMNS)} FROM row')
     )
-    found = {name: values[0] if values else None for name, values in whole.columns.items()}
+    found = {name: values[0] if values else _NOTHING.get(name) for name, values in whole.columns.items()}
     keys: dict[str, Any] = {}
     for name in table.columns:
         if name in COLUMNS or name in ("hour", "sun_zenith_deg"):

@@ -6,10 +6,6 @@ import gzip
 from pathlib import Path
 
 import pytest
-from browser import Page
-from map_made import SAMPLES
-from map_window import choose as choose_layer
-from map_window import drawn, select, slide, text
 
 from logtool import open_logs
 from logtool.pages.map import map_data_of, map_text
@@ -20,6 +16,10 @@ from logtool.records.judge import Record, judge
 from logtool.records.tally import HOUR_US
 from logtool.tables.choice import choose, instant
 from logtool.tables.result import written_time
+from tests.browser import Page
+from tests.pages.map_made import SAMPLES
+from tests.pages.map_window import choose as choose_layer
+from tests.pages.map_window import drawn, select, slide, text
 from tests.tables.making import heard, setup, table, write
 
 BOM = b"\xef\xbb\xbf"

@@ -7,13 +7,13 @@ from collections import defaultdict
 from pathlib import Path
 
 import pytest
-from map_made import SAMPLES, drawn_in, made
 
 from logtool import NoRecordsError, UsageError, open_logs
 from logtool.pages.map import map_data_of, map_text
 from logtool.pages.map_data import MapData
 from logtool.places.geodesic import bearing_deg, distance_km
 from logtool.tables.choice import choose
+from tests.pages.map_made import SAMPLES, drawn_in, made
 from tests.tables.making import heard, setup, stop, table, watch, write
 
 AT, TO = "JN58td", "RE78ir"

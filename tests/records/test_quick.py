@@ -24,13 +24,14 @@ PATTERNS = {"heard": ("heard",), "event": ("watch", "noise")}  # pattern to the 
 # Values near the edges of what is good, for any number, and others beside.
 EDGES = sorted({edge for bounds in slow_reader.COLUMN_BOUNDS.values() for edge in bounds})
 KEY_EDGES = sorted({edge for bounds in slow_reader.KEY_BOUNDS.values() if bounds for edge in bounds})
+WHOLES = ["", "0", "00", "1", "2", "4", "9", "10", "59", "61", "99", "100", "9999999999", "12345678901"]
 NUMBERS = [
     sign + whole + decimals
-    for whole in ("", "0", "00", "1", "2", "4", "9", "10", "59", "61", "99", "100", "9999999999", "12345678901")
+    for whole in WHOLES
     for sign in ("", "-", "+", "--", " ")
     for decimals in ("", ".", ".0", ".5", ".000001", ".999999", ".1234567", "e3")
 ] + [edge + end for edge in EDGES + KEY_EDGES for end in ("", ".0", ".000000", ".000001", "1", "0", " ")]
-NUMBERS += ["nan", "inf", "\u0663", "23999", "23999.999999", "24001", "86399.5", "2999999999", "3000000001", "0.09"]
+NUMBERS += ["nan", "inf", "\u0663", "23999.999999", "24001", "86399.5", "2999999999", "3000000001", "0.09"]
 FIELDS: dict[str, list[str]] = {
     "time": [
         f"{date}T{clock}Z"
@@ -40,23 +41,25 @@ FIELDS: dict[str, list[str]] = {
             "2026-06-31", "2026-09-31", "2026-11-31", "2026-12-31", "2026-01-32", "2026-00-01", "2026-13-01",
             "2026-10-00", "2026-8-01", "02026-08-01", "2026-08-01 ",
         )
-        for clock in ("00:00:00", "23:59:59.999999", "24:00:00", "23:60:00", "23:59:60", "1:00:00", "19:05:05.",
-                      "09:00:00.1234567")
+        for clock in ("00:00:00", "23:59:59.999999", "24:00:00", "23:60:00", "23:59:60", "1:00:00",
+                      "19:05:05.", "09:00:00.1234567")
     ],
     "kind": ["heard", "watch", "noise", "setup", "stop", "note", "Heard", "heard ", "hear", "heardwatch", ""],
     "receiver": ["hut", "h" * 32, "h" * 33, "", "a b", "a.b", "\u00fc", "_-9"],
     "mode": ["K8", "", "a_./+-9", "M" * 16, "M" * 17, "K 8", "K8\\"],
     "sender": ["Q1ABC", "", "q1/_-", "Q" * 20, "Q" * 21, "Q1,", "<Q1>"],
     "addressee": ["Q1ABC", "", "q1/_-", "Q" * 20, "Q" * 21, "Q.", "\u017f"],
-    "locator": ["", "JN", "JN58", "rr99xx", "JN58td25", "JN58td25xe", "JN5", "SN58", "JN58ty", "JN58td25xe0", "58"],
-    "text": ["", "hello", "\\\\", "\\t\\n\\r", "\\", "\\\\\\", "\\x", "\u00b5 \u2028", "a\u0085", "a\x00", "a\x02",
-             "x" * 4000, "x" * 4001, "a\x7f", " ", "#", '"', "\ufeff", "\U0001f4fb"],
+    "locator": ["", "JN", "JN58", "rr99xx", "JN58td25", "JN58td25xe", "JN5", "SN58", "JN58ty",
+                "JN58td25xe0", "58"],
+    "text": ["", "hello", "\\\\", "\\t\\n\\r", "\\", "\\\\\\", "\\x", "\u00b5 \u2028", "a\u0085", "a\x00",
+             "a\x02", "x" * 4000, "x" * 4001, "a\x7f", " ", "#", '"', "\ufeff", "\U0001f4fb"],
 }  # fmt: skip
-DIALS = ["7078000", "", "0", "1", "007078000", "999999999", "1000000000", "3000000000", "3000000001", "7078000.0"]
-UNKNOWN_KEYS = ["x", "own", "on", "on_", "on_sx", "onset", "a" * 32, "a" * 33, "sur", "surely", "agc2", "d", "dbf"]
+DIALS = ["", "7078000", "0", "1", "007078000", "999999999", "1000000000", "3000000000", "3000000001", "1.0"]
+UNKNOWN_KEYS = ["a" * 32, "a" * 33, "x", "own", "on", "on_", "on_sx", "onset", "surely", "agc2", "d", "dbf"]
 BAD_KEYS = ["", "A", "1a", "_a", "a-b", "\u00e4", " on_s", "on_s "]
-VALUES = ["1", "0", "0.5", "-3", "none", "on", "off", "random", "alternate", "wire", "a=b", "on_s=5", "", " ", "; ",
-          "x;y", "1; ", "1; x=2", "\u00e9" * 50, "v" * 199, "v" * 200, "v" * 201, "a\x01", "a\x9f", "\\", "\u2028"]  # fmt: skip
+VALUES = ["1", "0", "0.5", "-3", "none", "on", "off", "random", "alternate", "wire", "a=b", "on_s=5", "",
+          " ", "; ", "x;y", "1; ", "1; x=2", "\u00e9" * 50, "v" * 199, "v" * 200, "v" * 201, "a\x01", "a\x9f",
+          "\\", "\u2028"]  # fmt: skip
 
 
 @pytest.fixture(scope="module")
@@ -154,14 +157,18 @@ def test_the_cases_by_hand(accepts: Accepts) -> None:
 
 def test_every_number_up_to_its_bounds(accepts: Accepts) -> None:
     """Whole numbers and halves all round the bounds, for each column and key with bounds."""
-    values = [(name, value) for name, bounds in slow_reader.COLUMN_BOUNDS.items() for value in around(*bounds)]
+    values = [
+        (name, value) for name, bounds in slow_reader.COLUMN_BOUNDS.items() for value in around(*bounds)
+    ]
     lines = [line(**{name: value}) for name, value in values]
     for name, bounds in slow_reader.KEY_BOUNDS.items():
         more = [(name, value) for value in around(*(bounds or ("-9", "9")))]
         lines += [line(more=f"{name}={value}") for _, value in more]
         values += more
     refused_good = set()
-    for value, raw, accepted in zip(values, lines, accepts("heard", [raw.decode() for raw in lines]), strict=True):
+    for value, raw, accepted in zip(
+        values, lines, accepts("heard", [raw.decode() for raw in lines]), strict=True
+    ):
         good = isinstance(judge(raw), Record)
         assert good or not accepted, raw
         if good and not accepted:
@@ -193,7 +200,7 @@ ORDINARY_KEYS = {
     "decoder": ["own 1.2 (test)", "x=y"],
 }
 ORDINARY = {
-    "time": ["2026-03-01T22:00:15Z", "2026-03-01T22:00:07.5Z", "2024-02-29T23:59:59.123456Z", "1999-12-31T00:00:00Z"],
+    "time": ["2026-03-01T22:00:15Z", "2026-03-01T22:00:07.5Z", "2024-02-29T23:59:59.123456Z"],
     "receiver": ["hut", "north-2_A"],
     "dial_hz": ["7078000", "136000", "50313000", "432065000"],
     "audio_hz": ["", "0", "1503.7", "2400", "24000"],
@@ -234,7 +241,9 @@ def test_ordinary_logs_do_not_go_to_the_judge(accepts: Accepts) -> None:
     """But for setups, stops, notes and comments, which are few."""
     lines = [raw.decode() for raw in comparing.night(1000)]
     for pattern, kinds in PATTERNS.items():
-        assert accepts(pattern, lines) == [text.split("\t")[1] in kinds if "\t" in text else False for text in lines]
+        assert accepts(pattern, lines) == [
+            text.split("\t")[1] in kinds if "\t" in text else False for text in lines
+        ]
 
 
 @pytest.mark.parametrize("least", [0, 1])

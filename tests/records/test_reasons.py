@@ -64,7 +64,7 @@ def test_a_bad_line_costs_one_line_wherever_it_stands(tmp_path: Path) -> None:
     short = [raw for raw in first_of.values() if len(raw) < 500]
     long = [raw for raw in first_of.values() if len(raw) >= 500]
     files = []
-    for n, raw in enumerate(short + [b"\x01", b"\x02", b"\r", b"\xef\xbb\xbf", b'"', b"'", b"\x00", b"\n\r"]):
+    for n, raw in enumerate([*short, b"\x01", b"\x02", b"\r", b"\xef\xbb\xbf", b'"', b"'", b"\x00", b"\n\r"]):
         lines = comparing.night(12, f"hut{n}")
         files += [b"\n".join([*lines[:i], raw, *lines[i:], b""]) for i in range(len(lines) + 1)]
     for n, raw in enumerate(long):

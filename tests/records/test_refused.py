@@ -83,7 +83,9 @@ def test_what_may_be_a_log_is_not_refused(data: bytes, tmp_path: Path) -> None:
         (b"# a comment\n# logtool layout 2\n", False),
     ],
 )
-def test_a_higher_layout_is_refused_and_the_others_are_read(first: bytes, refused: bool, tmp_path: Path) -> None:
+def test_a_higher_layout_is_refused_and_the_others_are_read(
+    first: bytes, refused: bool, tmp_path: Path
+) -> None:
     (tmp_path / "a.log").write_bytes(first + line() * first.endswith(b"\n"))
     (tmp_path / "b.log").write_bytes(b"# logtool layout 1\n" + line(sender="Q2A"))
     for anyway in (False, True):
@@ -107,10 +109,14 @@ def test_an_endless_line_refuses_its_file_alone(tmp_path: Path, monkeypatch: pyt
 
 
 NIGHT = b"\n".join([*comparing.night(40), b"bad", b""])
-MORE = b"\n".join([line(sender=f"Q{i}NEW") for i in range(5)] + [b"bad", line("setup", time="2026-03-01T23:30:00Z"), b""])
+MORE = b"\n".join(
+    [line(sender=f"Q{i}NEW") for i in range(5)] + [b"bad", line("setup", time="2026-03-01T23:30:00Z"), b""]
+)
 
 
-@pytest.mark.parametrize("more", [MORE, b"half a li", b"\xff\xff\n", b"a\rb\n\x01", b"x" * 100_000, b"\x00\n"])
+@pytest.mark.parametrize(
+    "more", [MORE, b"half a li", b"\xff\xff\n", b"a\rb\n\x01", b"x" * 100_000, b"\x00\n"]
+)
 def test_a_log_that_grows_after_the_look_is_read_as_it_was_seen(more: bytes, tmp_path: Path) -> None:
     log = tmp_path / "night.log"
     log.write_bytes(NIGHT)

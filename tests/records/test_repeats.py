@@ -14,7 +14,7 @@ from tests.records.comparing import line
 
 
 def test_receptions_and_events_repeated_in_one_file_and_over_files(tmp_path: Path) -> None:
-    """Counted by hand: 2 of 5 receptions and 2 of 3 events are new in the first, 1 of 4 lines in the second."""
+    """Counted by hand: four lines are new in the first, one of four in the second."""
     a, b, c = (line(sender=f"Q{i}ABC") for i in range(3))
     stop, watch = line("stop"), line("watch")
     first = [a, stop, b, a, stop, a, b"bad", b"bad", watch, a]
@@ -43,7 +43,9 @@ def test_only_a_line_equal_byte_for_byte_is_repeated(tmp_path: Path) -> None:
 
 
 def test_a_record_is_no_repeat_of_a_comment_or_of_a_line_set_aside(tmp_path: Path) -> None:
-    comparing.compare(tmp_path, b"#" + line() + b"\n" + line() + b"\t\n" + line() + b"\n" + line() + b"\r\r\n")
+    comparing.compare(
+        tmp_path, b"#" + line() + b"\n" + line() + b"\t\n" + line() + b"\n" + line() + b"\r\r\n"
+    )
 
 
 def test_many_lines_that_differ_in_little_are_all_counted(tmp_path: Path) -> None:
@@ -76,8 +78,13 @@ def test_lines_decide_where_their_hashes_are_equal(
     monkeypatch.setattr(tally, "_HASH", hashed)
     chance = random.Random(hashed)
     lines = comparing.night(150) + [
-        line(time=f"2026-03-01T22:{i % 3:02d}:00Z", sender=f"Q{i % 2}A", snr_db=str(i % 4), locator=("", "JN58")[i % 2],
-             text=str(i % 5))
+        line(
+            time=f"2026-03-01T22:{i % 3:02d}:00Z",
+            sender=f"Q{i % 2}A",
+            snr_db=str(i % 4),
+            locator=("", "JN58")[i % 2],
+            text=str(i % 5),
+        )
         for i in range(60)
-    ]  # fmt: skip
+    ]
     comparing.compare(tmp_path, *(b"\n".join(chance.choices(lines, k=120)) for _ in range(6)))

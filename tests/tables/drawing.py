@@ -17,7 +17,8 @@ RECEIVERS = ("hut", "isle", "top")
 DIALS = ("7074000", "3573000", "7041500", "6100000", "007074000")
 SENDERS = ("Q1ABC", "q1abc", "Q2X", "Q3Z/P", "Q4U", "Q5V", "Q6W", "", "Q7", "Q8", "Q9", "Q0AA")
 LOCATORS = (
-    "", "JN58", "JN58td", "jn58TD25", "JN58ae", "JN59", "KO02", "KO02aa", "AA00", "RE78ir", "RR99xx", "JN", "RE78",
+    "", "JN58", "JN58td", "jn58TD25", "JN58ae", "JN59", "KO02", "KO02aa", "AA00", "RE78ir", "RR99xx", "JN",
+    "RE78",
 )  # fmt: skip
 # Steps of 4.6, 13.9 and 9.3 km, one that begins another, and places far off, one across the date line.
 PLACES = ("JN58td", "JN58te", "JN58tg", "JN58", "jn58TD44", "KO02aa", "RE78ir", "AA00aa")

@@ -92,7 +92,10 @@ def all_rows(logs: Logs, **words: Any) -> dict[str, str]:
     found = {}
     for name in TABLES:
         made = table(logs, name, **words)
-        found[name] = json.dumps(list(made.rows()))
+        rows = list(made.rows())
+        if name == "lines":  # where a line stands is another matter
+            rows = sorted(({**row, "file": "", "line": 0} for row in rows), key=json.dumps)
+        found[name] = json.dumps(rows)
         if name == "reach":
             found["summary"] = json.dumps(made.written_summary())
     return found

@@ -157,7 +157,7 @@ def make_world(
     for file, number, raw, record in found:
         if record.kind != "heard":
             continue
-        place = [held for since_us, held in places[record.receiver] if since_us <= us(record)][-1]
+        place = _place_at(places[record.receiver], us(record))
         assert record.dial_hz is not None
         receptions.append(
             Reception(
@@ -209,6 +209,10 @@ def _places(
         antenna = dict(setups[since_us].more)["antenna"]
         held.append((since_us, Place(name, antenna, locator, centre(first)[1])))
     return held
+
+
+def _place_at(places: list[tuple[int, Place]], at_us: int) -> Place:
+    return [held for since_us, held in places if since_us <= at_us][-1]
 
 
 def _one_place(a: str, b: str) -> bool:
@@ -293,7 +297,7 @@ def _cut(
     ends = sorted({from_us, to_us} | {cut for cut in cuts if from_us < cut < to_us})
     spells = []
     for start_us, stop_us in pairwise(ends):
-        place = [held for since_us, held in places if since_us <= start_us][-1]
+        place = _place_at(places, start_us)
         spells.append(
             Spell(start_us, stop_us, place, band, night_at(start_us // HOUR_US, place.lon_deg), way)
         )

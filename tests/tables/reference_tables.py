@@ -7,7 +7,6 @@ from __future__ import annotations
 
 from collections import Counter
 from datetime import date
-from typing import Any
 
 from logtool.places.geodesic import distance_km
 from logtool.places.locator import centre
