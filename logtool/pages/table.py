@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import IO, Any
 
@@ -15,7 +15,7 @@ BAR_CELLS = 10
 EIGHTHS = " ▏▎▍▌▋▊▉"
 MOST_ROWS = 40  # shown on a terminal without --all
 DAY_US = 86_400_000_000
-NOTHING = "–"
+NOTHING = "–"  # noqa: RUF001 - a dash that is wider than a minus sign, on purpose
 FLEXIBLE = frozenset({"shown", "text", "more"})  # columns that may be cut short to fit
 FLEXIBLE_CELLS = 24
 
@@ -345,7 +345,7 @@ def _write_rows(out: IO[str], columns: list[Shown], cells: dict[str, list[str]])
         out.write(_line(row, sides, widths))
 
 
-def _line(row: tuple[str, ...], sides: list[Callable[[str, int], str]], widths: list[int]) -> str:
+def _line(row: tuple[str, ...], sides: Sequence[Callable[[str, int], str]], widths: list[int]) -> str:
     padded = [side(cell, width) for side, cell, width in zip(sides, row, widths, strict=True)]
     return "  ".join(padded).rstrip() + "\n"
 

@@ -281,9 +281,9 @@ class Logs:
             ledger[i].repeated += count
         for odd in self._odd:
             if odd.why == COMMENT:
-                ledger[odd.file].comments += odd.count
+                ledger[odd.file].comments += odd.copies
             elif odd.why != BLANK:
-                ledger[odd.file].reasons[odd.why] += odd.count
+                ledger[odd.file].reasons[odd.why] += odd.copies
         for file in ledger:
             file.blank = file.lines - file.comments - file.records - file.repeated - file.set_aside
         return ledger

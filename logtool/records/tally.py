@@ -50,7 +50,7 @@ class Odd(NamedTuple):
 
     file: int
     line: str
-    count: int
+    copies: int
     why: str
 
 
@@ -58,7 +58,7 @@ class Repeats(NamedTuple):
     """How many lines of a file are equal to an earlier record's."""
 
     file: int
-    count: int
+    copies: int
 
 
 def create_tally(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cuts) -> list[Odd]:
@@ -76,12 +76,17 @@ def create_tally(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cut
     Returns
     -------
     list of Odd
-        `tally` has the columns file, start_us (of the hour or the piece of it), receiver, dial_hz, mode, sender, n and the lists times (microseconds into the hour), snrs
-        and hashes (of the lines), all of n in one order, and locators (the own ones). `odd_records` (file, line, n) has the records that
-        are not in it.
+        What is no record.
+
+    Notes
+    -----
+    `tally` has the columns file, start_us (of the hour or the piece of it), receiver, dial_hz, mode, sender,
+    n (receptions) and lists: times (microseconds into the hour), snrs and hashes (of the lines), all of n
+    in one order, and locators (the own ones). `odd_records` (file, line, n) has the records that are not
+    in it.
     """
     source = f"""
-        SELECT file, CASE WHEN NOT quick THEN line END AS odd, {_HASH.format(time='f[1]')} AS hash, f
+        SELECT file, CASE WHEN NOT quick THEN line END AS odd, {_HASH.format(time="f[1]")} AS hash, f
         FROM (SELECT *, CASE WHEN quick THEN {_SPLIT} END AS f
               FROM (SELECT file, line, {accepts_sql("heard")} AS quick FROM {lines}))"""
     connection.execute(
@@ -171,7 +176,9 @@ def _drop_copies(connection: duckdb.DuckDBPyConnection, lines: str, cuts: Cuts) 
     copies = f"""
         SELECT file, {_SPLIT} AS f, n - (file = min(file) OVER (PARTITION BY line))::INTEGER AS repeated
         FROM (SELECT file, line, count(*) AS n FROM {lines}
-              WHERE {_HASH.format(time='split_part(line, chr(9), 1)')} IN (SELECT hash FROM candidate) AND {accepts_sql("heard")} GROUP BY ALL)"""
+              WHERE {_HASH.format(time="split_part(line, chr(9), 1)")} IN (SELECT hash FROM candidate)
+                  AND {accepts_sql("heard")}
+              GROUP BY ALL)"""
     same = " AND ".join(f"tally.{name} = copy.{name}" for name in _KEYS)
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE extra AS
@@ -185,7 +192,9 @@ def _drop_copies(connection: duckdb.DuckDBPyConnection, lines: str, cuts: Cuts) 
     connection.execute("DELETE FROM tally WHERE n = 0")
     return [
         Repeats(*row)
-        for row in connection.execute("SELECT file, sum(repeated)::BIGINT FROM extra GROUP BY file").fetchall()
+        for row in connection.execute(
+            "SELECT file, sum(repeated)::BIGINT FROM extra GROUP BY file"
+        ).fetchall()
     ]
 
 

@@ -117,4 +117,5 @@ def make_listening(connection: duckdb.DuckDBPyConnection) -> None:
             SELECT spot.*, band, greatest(from_us, start_us) AS from_us, least(to_us, stop_us) AS to_us
             FROM hourly JOIN spot USING (receiver, hour)
             WHERE from_us < stop_us AND to_us > start_us)
-        SELECT name AS receiver, antenna, place, lon_deg, band, hour, night, start_us, from_us, to_us, listening FROM cut""")
+        SELECT name AS receiver, antenna, place, lon_deg, band, hour, night, start_us, from_us, to_us, listening
+        FROM cut""")

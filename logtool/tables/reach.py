@@ -119,7 +119,8 @@ def reach_table(logs: Logs, choice: Choice) -> Table:
     order = ", ".join(f"{key} NULLS FIRST" for key in keys)
     table = Table.of(
         connection.execute(f"""
-            SELECT hour * {HOUR_US} AS hour, {", ".join((*KEYS[1:], *by))}, {", ".join(COLUMNS)}, place AS sun_zenith_deg, lon_deg
+            SELECT hour * {HOUR_US} AS hour, {", ".join((*KEYS[1:], *by))}, {", ".join(COLUMNS)},
+                place AS sun_zenith_deg, lon_deg
             FROM row ORDER BY {order}""")
     )
     table.lon_deg = table.columns.pop("lon_deg")

@@ -33,8 +33,8 @@ _SECOND_US = 1_000_000
 def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     """Make the tables that all figures are built from, unless they are there; return the connection.
 
-    `rollup` has receiver (its name), antenna, place, lon_deg, listening, band, mode, sender (empty: unnamed), hour, start_us,
-    night, n, first_us, last_us, again (a reception of it was heard again), row (of `tally`, for its
+    `rollup` has receiver (its name), antenna, place, lon_deg, listening, band, mode, sender (empty: unnamed),
+    hour, start_us, night, n, first_us, last_us, again (a reception of it was heard again), row (of `tally`, for its
     lists), locator and borrowed (of the sender in the hour). `listening` says when the receiver
     listened, `pair` how far it is from a place to a locator.
 
@@ -70,7 +70,8 @@ def _make_events(logs: Logs) -> None:
     field = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE event AS
-        SELECT {field["kind"]} AS kind, {field["receiver"]} AS receiver, epoch_us({field["time"]}::TIMESTAMP) AS time_us,
+        SELECT {field["kind"]} AS kind, {field["receiver"]} AS receiver,
+            epoch_us({field["time"]}::TIMESTAMP) AS time_us,
             nullif({field["dial_hz"]}, '') AS dial_hz,
             (nullif(regexp_extract({field["more"]}, '(?:^|; )on_s=([^;]+)', 1), '')::DECIMAL(12, 6)
                 * {_SECOND_US})::BIGINT AS on_us
@@ -146,8 +147,8 @@ def _make_pieces(connection: duckdb.DuckDBPyConnection) -> None:
     """Make the table `piece`: the tally's rows with band, station and their first and last reception."""
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE piece AS
-        SELECT t.rowid AS row, spot.name AS receiver, antenna, place, lon_deg, listening, band, mode, upper(sender) AS sender, hour,
-            t.start_us, night, n, hour * {HOUR_US} + list_min(times) AS first_us,
+        SELECT t.rowid AS row, spot.name AS receiver, antenna, place, lon_deg, listening, band, mode,
+            upper(sender) AS sender, hour, t.start_us, night, n, hour * {HOUR_US} + list_min(times) AS first_us,
             hour * {HOUR_US} + list_max(times) AS last_us
         FROM tally t JOIN spot ON t.receiver = spot.receiver AND t.start_us = spot.start_us
             JOIN dial_band USING (dial_hz)""")

@@ -6,9 +6,9 @@ import sys
 
 import duckdb
 
+from logtool.records.layout import COLUMN_NAMES as NAMES
 from tests.benchmarks.peer import distances, print_rows
 
-NAMES = "time kind receiver dial_hz audio_hz snr_db late_s mode sender addressee locator power_dbm text more".split()
 TYPES = {"time": "TIMESTAMP", "snr_db": "DOUBLE", "dial_hz": "BIGINT"}
 
 

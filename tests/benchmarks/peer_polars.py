@@ -6,9 +6,8 @@ import sys
 
 import polars as pl
 
+from logtool.records.layout import COLUMN_NAMES as NAMES
 from tests.benchmarks.peer import COLUMNS, distances, print_rows
-
-NAMES = "time kind receiver dial_hz audio_hz snr_db late_s mode sender addressee locator power_dbm text more".split()
 
 
 def _group(path: str) -> pl.DataFrame:
