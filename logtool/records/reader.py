@@ -180,7 +180,8 @@ class Logs:
         paths = self.paths
         for i, reasons in wanted.items():
             found += [(i, n, reasons[line], line) for n, line in line_numbers(paths[i], reasons)]
-        return [(self.file_names[i], n, reason, line) for i, n, reason, line in sorted(found)]
+        names = self.file_names
+        return [(names[i], n, reason, line) for i, n, reason, line in sorted(found)]
 
     def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:
         sources = sources_of(paths)

@@ -8,7 +8,7 @@ from logtool.places.locator import written
 from logtool.tables.choice import Choice, choose
 from logtool.tables.chosen import unknown_words
 from logtool.tables.locators import make_pairs, make_sender_hours, resolve
-from logtool.tables.receptions import make_receptions
+from logtool.tables.receptions import receptions_sql
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -19,13 +19,13 @@ if TYPE_CHECKING:
 
 def between_table(logs: Logs, choice: Choice) -> Table:
     """Return the columns of `between`; see `between`."""
-    make_receptions(logs, choice)
+    receptions = receptions_sql(logs, choice)
     connection = logs.connection
-    connection.execute("""
+    connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE message AS
         SELECT DISTINCT least(sender, addressee) AS a, greatest(sender, addressee) AS b, band, sender, time_us,
             hour, text
-        FROM reception WHERE sender <> '' AND addressee <> '' AND sender <> addressee""")
+        FROM {receptions} WHERE sender <> '' AND addressee <> '' AND sender <> addressee""")
     station_hours = """
         SELECT DISTINCT unnest([a, b]) AS sender, hour FROM message"""
     make_sender_hours(connection, "talker_hour", station_hours)

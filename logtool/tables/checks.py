@@ -124,13 +124,13 @@ def _steps(logs: Logs) -> list[dict[str, Any]]:
     connection.execute("SET preserve_insertion_order = true")
     try:
         rows = connection.execute(f"""
-            WITH read AS (
-                SELECT file, row_number() OVER () AS nth, string_split(line, chr(9)) AS f
-                FROM {logs.lines} WHERE {accepts_sql("heard")}),
+            WITH split AS (
+                SELECT file, string_split(line, chr(9)) AS f FROM {logs.lines} WHERE {accepts_sql("heard")}),
+            read AS (
+                SELECT file, f[3] AS receiver, epoch_us(f[1]::TIMESTAMP) AS time_us, row_number() OVER () AS nth
+                FROM split),
             step AS (
-                SELECT file, f[3] AS receiver, epoch_us(f[1]::TIMESTAMP) AS time_us,
-                    lag(epoch_us(f[1]::TIMESTAMP)) OVER (PARTITION BY file, f[3] ORDER BY nth) AS before_us
-                FROM read)
+                SELECT *, lag(time_us) OVER (PARTITION BY file, receiver ORDER BY nth) AS before_us FROM read)
             SELECT file, receiver, before_us, time_us FROM step
             WHERE before_us - time_us > {STEP_S * _SECOND_US} ORDER BY ALL""").fetchall()
     finally:

@@ -10,7 +10,7 @@ from logtool.records.layout import COLUMNS, Column
 from logtool.records.locate import line_numbers
 from logtool.tables.choice import Choice, choose
 from logtool.tables.chosen import unknown_words
-from logtool.tables.receptions import make_receptions
+from logtool.tables.receptions import receptions_sql
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -21,9 +21,9 @@ if TYPE_CHECKING:
 
 def lines_table(logs: Logs, choice: Choice) -> Table:
     """Return the columns of `lines`; see `lines`."""
-    make_receptions(logs, choice)
+    receptions = receptions_sql(logs, choice)
     wanted: dict[int, dict[bytes, tuple[int, list[str]]]] = defaultdict(dict)
-    rows = logs.connection.execute("SELECT file, raw, time_us, f FROM reception").fetchall()
+    rows = logs.connection.execute(f"SELECT file, raw, time_us, f FROM {receptions}").fetchall()
     for file, raw, time_us, fields in rows:
         wanted[file][raw.encode()] = (time_us, fields)
     columns: dict[str, list[Any]] = {name: [] for name in ("file", "line", *(c.name for c in COLUMNS))}

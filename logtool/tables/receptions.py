@@ -15,8 +15,8 @@ if TYPE_CHECKING:
     from logtool.records.reader import Logs
 
 
-def make_receptions(logs: Logs, choice: Choice) -> None:
-    """Make the table `reception` of the receptions that the choice counts, each record once.
+def receptions_sql(logs: Logs, choice: Choice) -> str:
+    """Return the SQL of a relation of the receptions that the choice counts, each record once.
 
     It has file (index), raw (the line), time_us, receiver (its name), antenna, place, band, hour,
     start_us, night, mode, sender, addressee (both upper case), text and f (the fields as written, from 1).
@@ -28,7 +28,7 @@ def make_receptions(logs: Logs, choice: Choice) -> None:
     choice : Choice
         Which receptions.
     """
-    connection = make_rollup(logs, choice)
+    make_rollup(logs, choice)
     field = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
     lines = f"""
         SELECT file, line FROM {logs.lines} WHERE {accepts_sql("heard")}
@@ -36,8 +36,7 @@ def make_receptions(logs: Logs, choice: Choice) -> None:
     if any(file.repeated for file in logs.inputs):
         lines = f"SELECT min(file) AS file, line FROM ({lines}) GROUP BY line"
     where = " AND ".join(conditions(choice, of_receptions=True))
-    connection.execute(f"""
-        CREATE OR REPLACE TEMP TABLE reception AS
+    return f"""(
         WITH split AS (SELECT file, line AS raw, string_split(line, chr(9)) AS f FROM ({lines})),
         fields AS (
             SELECT file, raw, f, epoch_us({field["time"]}::TIMESTAMP) AS time_us, {field["receiver"]} AS receiver,
@@ -50,4 +49,4 @@ def make_receptions(logs: Logs, choice: Choice) -> None:
             FROM fields JOIN spot ON fields.receiver = spot.receiver AND time_us // {HOUR_US} = spot.hour
                 AND time_us >= spot.start_us AND time_us < spot.stop_us
             JOIN dial_band USING (dial_hz))
-        SELECT * FROM placed WHERE {where}""")
+        SELECT * FROM placed WHERE {where})"""

@@ -136,9 +136,11 @@ def receptions(logs: Logs) -> Counter[tuple[Any, ...]]:
 
 
 def slow_receptions(accounts: list[Account]) -> Counter[tuple[Any, ...]]:
-    starts = [
-        (record.receiver, us(record)) for a in accounts for *_, record in a.records if record.kind == "setup"
-    ]
+    starts: dict[str, list[int]] = {}
+    for account in accounts:
+        for *_, record in account.records:
+            if record.kind == "setup":
+                starts.setdefault(record.receiver, []).append(us(record))
     found: Counter[tuple[Any, ...]] = Counter()
     for i, account in enumerate(accounts):
         for *_, record in account.records:
@@ -146,9 +148,7 @@ def slow_receptions(accounts: list[Account]) -> Counter[tuple[Any, ...]]:
                 continue
             time_us = us(record)
             pieces = [time_us - time_us % HOUR_US]
-            pieces += [
-                start for receiver, start in starts if receiver == record.receiver and start <= time_us
-            ]
+            pieces += [start for start in starts.get(record.receiver, []) if start <= time_us]
             key = (i, max(pieces), record.receiver, record.dial_hz, record.mode, record.sender)
             found[*key, "at", time_us] += 1
             found[*key, "snr", record.snr_db] += 1

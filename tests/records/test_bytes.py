@@ -55,6 +55,8 @@ TEXTS: dict[str, bytes] = {
     "byte 1 on lines": b"\x01\n" + ONE + b"\n\x01\x01\n" + TWO + b"\n\x01",
     "byte 2 on lines": b"\x02\n" + ONE + b"\n\x02\x02\n" + TWO + b"\n\x02",
     "byte 2 among blank lines": b"\n\x02\n\n" + ONE + b"\n\n\x02\n",
+    "every control byte alone": b"\n".join(bytes([byte]) for byte in (*range(32), 127)) + b"\n" + ONE,
+    "every control byte in a record": b"\n".join(line(text=f"a{chr(code)}b") for code in range(160)),
     "quotes": b'"\n' + ONE + b'\n"x"\n' + line(text='a "b" c') + b'\n"' + TWO + b"\"\n'\n" + THREE,
     "backslashes": b"\\\n" + line(text="\\\\") + b"\n\\N\n" + ONE,
     "words that mean no value elsewhere": b"NULL\nnull\nNaN\n" + ONE,

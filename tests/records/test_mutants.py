@@ -41,7 +41,7 @@ def mutants(draw: st.DrawFn) -> bytes:
     return data[: draw(st.integers(0, len(data)))] if draw(st.booleans()) else data
 
 
-@settings(max_examples=100, deadline=None, derandomize=True, database=None)
+@settings(max_examples=70, deadline=None, derandomize=True, database=None)
 @given(st.lists(mutants(), min_size=1, max_size=6))
 def test_mutants_of_small_logs(datas: list[bytes]) -> None:
     with tempfile.TemporaryDirectory() as folder:

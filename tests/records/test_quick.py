@@ -178,6 +178,20 @@ def test_every_number_up_to_its_bounds(accepts: Accepts) -> None:
     assert all(float(value) >= 1e9 or value == "0.5" for _, value in refused_good)
 
 
+def test_every_date_and_clock(accepts: Accepts) -> None:
+    """All dates and more of years of all sorts, and all clocks: accepted where they are good, and only there."""
+    years = (1969, 1970, 1972, 1999, 2000, 2024, 2026, 2098, 2099, 2100)
+    times = [f"{y}-{m:02d}-{d:02d}T12:00:00Z" for y in years for m in range(14) for d in range(33)]
+    times += [f"{year}-02-29T12:00:00Z" for year in range(1960, 2110)]
+    times += [
+        f"2026-03-01T{h:02d}:{m:02d}:{s:02d}Z" for h in range(26) for m in (0, 59, 60) for s in (9, 59, 60)
+    ]
+    lines = [line(time=time) for time in times]
+    good = [isinstance(judge(raw), Record) for raw in lines]
+    assert accepts("heard", [raw.decode() for raw in lines]) == good
+    assert 366 * 4 < sum(good) < 366 * 9 + 300
+
+
 def around(low: str, high: str) -> list[str]:
     ends = [int(float(low)), int(float(high))]
     wholes = {end + step for end in ends for step in range(-120, 121)} | {end * 10 for end in ends}

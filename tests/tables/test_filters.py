@@ -128,8 +128,8 @@ def test_antenna_none_is_left_out_unless_asked_for(tmp_path: Path) -> None:
         ({"from_": "yesterday"}, "--from 'yesterday' is neither a date nor a time"),
         ({"from_": "2026-03-02", "to": "2026-03-02"}, "--from 2026-03-02 is not before --to 2026-03-02"),
         ({"by": "sender"}, "--by 'sender': rows can be split by antenna, band, mode, night, receiver"),
-        ({"gap_min": 0.0}, "--gap-min 0 is too short"),
-        ({"gap_min": float("nan")}, "--gap-min nan is too short"),
+        ({"gap_min": 0.0}, "--gap-min 0 cannot be used"),
+        ({"gap_min": float("nan")}, "--gap-min nan cannot be used"),
         ({"sender": "Q1 ABC"}, "--sender 'Q1 ABC' is not a call sign"),
     ],
 )

@@ -41,7 +41,7 @@ def test_a_hole_of_exactly_the_longest_gap_is_none(tmp_path: Path) -> None:
     assert minutes(tmp_path, lines) == {("21", "40m"): 20.0}
     assert gaps(tmp_path, lines) == []
     assert minutes(tmp_path, lines, gap_min=9.99) == {("21", "40m"): 0.0}
-    # Of three points without listening between them, none has a length, so there is nothing between two stretches.
+    # None of the three points has a length, so there is nothing between two stretches either.
     assert gaps(tmp_path, lines, gap_min=9.99) == []
 
 

@@ -114,8 +114,8 @@ def test_due_north_is_sector_zero_and_empty_sectors_have_rows(tmp_path: Path) ->
 
 
 def test_rarefied_senders_against_drawing_minutes(tmp_path: Path) -> None:
-    # Rarefaction, after Hurlbert (1971), from memory; with each reception thinned by itself instead of a fixed
-    # number of them drawn: in 30 of L minutes each stays with a chance of 30/L, and a sender with any that stays.
+    # Rarefaction, after Hurlbert (1971), from memory; but each reception is thinned by itself where he draws a
+    # fixed number: in 30 of L minutes each stays with a chance of 30/L, and a sender with any that stays.
     counts, listening_min = {"Q1": 1, "Q2": 3, "Q3": 10}, 48.0
     lines = [heard(at_minute(5 * i), name) for name, n in counts.items() for i in range(n)]
     row = reach_of(tmp_path, [*lines, watch("2026-03-01T21:48:00Z", 2880)])
@@ -230,10 +230,12 @@ def test_a_nights_share_is_the_mean_over_its_hours(tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize(
-    "lines", [[], ["# logtool layout 1"], [note(at_minute(0))], [stop(at_minute(0))], [SETUP]], ids=len
+    "lines",
+    [[], ["# logtool layout 1"], [note(at_minute(0))], [stop(at_minute(0))], [SETUP]],
+    ids=["empty", "comment", "note", "stop", "setup"],
 )
 def test_nothing_heard_gives_no_rows(tmp_path: Path, lines: list[str]) -> None:
-    assert {name: rows_of(tmp_path, lines, name) for name in TABLES} == dict.fromkeys(TABLES, [])
+    assert {name: rows_of(tmp_path, lines, name) for name in TABLES} == {name: [] for name in TABLES}
     with open_logs(write(tmp_path, lines), threads=1) as logs:
         for name in TABLES:
             frame = table(logs, name).to_pandas()

@@ -35,7 +35,7 @@ def without_twins(lines: list[str]) -> list[str]:
     return left
 
 
-@settings(max_examples=12, deadline=None, derandomize=True, database=None)
+@settings(max_examples=4, deadline=None, derandomize=True, database=None)
 @given(seed=st.integers(0, 10**6))
 def test_one_log_in_many_ways(seed: int) -> None:
     rng = Random(seed)
@@ -59,7 +59,7 @@ def test_one_log_in_many_ways(seed: int) -> None:
         with open_logs(whole, threads=2) as logs:
             assert all_rows(logs) == expected, "two threads"
         for way, paths in ways.items():
-            with open_logs(*paths, anyway=True) as logs:
+            with open_logs(*paths, threads=1, anyway=True) as logs:
                 assert all_rows(logs) == expected, way
 
 
@@ -70,7 +70,7 @@ def test_tables_do_not_disturb_each_other(folder: Path) -> None:
         wide_first = all_rows(logs)
         cut = all_rows(logs, **narrow)
         assert all_rows(logs) == wide_first
-        assert all_rows(logs, gap_min=90.0) != wide_first
+        assert all_rows(logs, gap_min=1.0) != wide_first
         assert all_rows(logs) == wide_first
     with open_logs(folder) as logs:
         assert all_rows(logs, **narrow) == cut
