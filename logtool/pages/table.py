@@ -4,175 +4,19 @@ from __future__ import annotations
 
 import sys
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
 from typing import IO, Any
 
+from logtool.pages.columns import BARS, COLUMNS, Shown, count, minute, tenth, text, whole
 from logtool.places.nights import local_mean_time
 from logtool.records.ledger import FileLedger
-from logtool.tables.result import Table, written_time
+from logtool.tables.result import Table
 
 BAR_CELLS = 10
 EIGHTHS = " ▏▎▍▌▋▊▉"
 MOST_ROWS = 40  # shown on a terminal without --all
 DAY_US = 86_400_000_000
-NOTHING = "–"  # noqa: RUF001 - a dash that is wider than a minus sign, on purpose
 FLEXIBLE = frozenset({"shown", "text", "more"})  # columns that may be cut short to fit
 FLEXIBLE_CELLS = 24
-
-
-@dataclass(frozen=True)
-class Shown:
-    """A column for people: its header, how a value is written, and how soon it is left out."""
-
-    name: str
-    header: str
-    write: Callable[[Any], str]
-    rank: int  # the greatest ranks are left out first where there is no room
-    right: bool = True
-
-
-def _text(value: Any) -> str:
-    return NOTHING if value is None else str(value)
-
-
-def _count(value: Any) -> str:
-    return NOTHING if value is None else f"{value:,}".replace(",", " ")
-
-
-def _whole(value: float | None) -> str:
-    return NOTHING if value is None else _count(round(value))
-
-
-def _tenth(value: float | None) -> str:
-    return NOTHING if value is None else f"{value:.1f}"
-
-
-def _yes(value: bool | None) -> str:
-    return NOTHING if value is None else "yes" if value else "no"
-
-
-def _minute(value: int | None) -> str:
-    return NOTHING if value is None else written_time(value)[:16].replace("T", " ")
-
-
-def _km(name: str, header: str, rank: int) -> Shown:
-    return Shown(name, header, _whole, rank)
-
-
-_STATION = [
-    Shown("receiver", "receiver", _text, 7, right=False),
-    Shown("antenna", "antenna", _text, 1, right=False),
-    Shown("band", "band", _text, 6, right=False),
-]
-_LISTENING = [
-    Shown("listening_min", "listening min", _whole, 2),
-    Shown("listening", "listening", _text, 9, right=False),
-]
-_FARTHEST = [
-    _km("farthest_km", "farthest km", 1),
-    Shown("farthest_sender", "farthest sender", _text, 4, right=False),
-]
-COLUMNS: dict[str, list[Shown]] = {
-    "check": [
-        Shown("file", "file", _text, 0, right=False),
-        Shown("line", "line", _count, 0),
-        Shown("reason", "reason", _text, 0, right=False),
-        Shown("shown", "what the line says", _text, 1, right=False),
-    ],
-    "reach": [
-        Shown("hour", "UTC", _minute, 0, right=False),
-        Shown("solar", "sun time", _text, 3, right=False),
-        *_STATION,
-        *_LISTENING,
-        Shown("receptions", "receptions", _count, 1),
-        Shown("unnamed", "unnamed", _count, 9),
-        Shown("senders", "senders", _count, 1),
-        Shown("heard_once", "heard once", _count, 7),
-        Shown("senders_in_30", "senders in 30 min", _tenth, 5),
-        Shown("located", "located", _count, 9),
-        Shown("squares", "squares", _count, 8),
-        _km("nearest_km", "nearest km", 3),
-        _km("median_km", "median km", 2),
-        _km("p90_km", "90 % km", 4),
-        *_FARTHEST,
-        _km("farthest_once_km", "once km", 8),
-        Shown("snr_median_db", "SNR dB", _tenth, 5),
-        Shown("sun_zenith_deg", "sun zenith", _whole, 6),
-    ],
-    "senders": [
-        *[column for column in _STATION if column.name != "antenna"],
-        Shown("sender", "sender", _text, 0, right=False),
-        Shown("locator", "locator", _text, 2, right=False),
-        Shown("borrowed", "borrowed", _yes, 8, right=False),
-        _km("distance_km", "km", 1),
-        _km("uncertainty_km", "± km", 4),
-        Shown("bearing_deg", "bearing", _whole, 2),
-        Shown("receptions", "receptions", _count, 1),
-        Shown("heard_again", "again", _yes, 5, right=False),
-        Shown("first", "first UTC", _minute, 6, right=False),
-        Shown("last", "last UTC", _minute, 5, right=False),
-        Shown("nights", "nights", _count, 4),
-        Shown("snr_median_db", "SNR dB", _tenth, 3),
-        Shown("snr_best_db", "best dB", _tenth, 7),
-    ],
-    "sectors": [
-        *_STATION,
-        Shown("sector_deg", "bearing", _tenth, 0),
-        Shown("receptions", "receptions", _count, 1),
-        Shown("senders", "senders", _count, 1),
-        _km("median_km", "median km", 2),
-        _km("farthest_km", "farthest km", 1),
-    ],
-    "nights": [
-        Shown("night", "night", _text, 0, right=False),
-        *_STATION,
-        Shown("from", "from UTC", _minute, 8, right=False),
-        Shown("to", "to UTC", _minute, 9, right=False),
-        *_LISTENING,
-        Shown("receptions", "receptions", _count, 1),
-        Shown("senders", "senders", _count, 1),
-        Shown("senders_in_30", "senders in 30 min", _tenth, 2),
-        Shown("squares", "squares", _count, 6),
-        _km("median_km", "median km", 3),
-        _km("p90_km", "90 % km", 4),
-        *_FARTHEST,
-    ],
-    "between": [
-        Shown("a", "station", _text, 0, right=False),
-        Shown("b", "and station", _text, 0, right=False),
-        Shown("band", "band", _text, 6, right=False),
-        Shown("first", "first UTC", _minute, 3, right=False),
-        Shown("last", "last UTC", _minute, 5, right=False),
-        Shown("from_a", "from first", _count, 2),
-        Shown("from_b", "from second", _count, 2),
-        Shown("locator_a", "locator", _text, 4, right=False),
-        Shown("locator_b", "and locator", _text, 4, right=False),
-        _km("between_km", "km between", 1),
-    ],
-    "lines": [
-        Shown("file", "file", _text, 3, right=False),
-        Shown("line", "line", _count, 1),
-        Shown("time", "UTC", lambda value: _text(value and written_time(value)), 0, right=False),
-        Shown("receiver", "receiver", _text, 5, right=False),
-        Shown("dial_hz", "dial Hz", _text, 6),
-        Shown("audio_hz", "audio Hz", _text, 5),
-        Shown("snr_db", "SNR dB", _text, 2),
-        Shown("late_s", "late s", _text, 6),
-        Shown("mode", "mode", _text, 7, right=False),
-        Shown("sender", "sender", _text, 1, right=False),
-        Shown("addressee", "addressee", _text, 4, right=False),
-        Shown("locator", "locator", _text, 3, right=False),
-        Shown("power_dbm", "dBm", _text, 8),
-        Shown("text", "text", _text, 2, right=False),
-        Shown("more", "more", _text, 9, right=False),
-    ],
-}
-BARS = {
-    "reach": "farthest_km",
-    "senders": "receptions",
-    "sectors": "receptions",
-    "nights": "senders_in_30",
-}
 
 
 def bar(value: float | None, greatest: float) -> str:
@@ -222,7 +66,7 @@ def write_table(out: IO[str], name: str, table: Table, inputs: list[FileLedger],
         values = [table.columns[measure][i] for i in kept]
         greatest = max((value for value in values if value is not None), default=0)
         cells[measure + " bar"] = [bar(value, greatest) for value in values]
-        columns.append(Shown(measure + " bar", "", _text, 2, right=False))
+        columns.append(Shown(measure + " bar", "", text, 2, right=False))
     if terminal and not show_all:
         columns = _that_fit(columns, cells, console.width)
         _cut_to_fit(columns, cells, console.width)
@@ -251,14 +95,14 @@ def _kept_rows(name: str, table: Table, *, limited: bool) -> tuple[list[int], li
         kept = every[:MOST_ROWS]
         what = "rows"
     left = len(every) - len(kept)
-    return kept, [f"{_count(left)} {what} are not shown; --all shows them"] if left else []
+    return kept, [f"{count(left)} {what} are not shown; --all shows them"] if left else []
 
 
 def _columns(name: str, table: Table) -> list[Shown]:
     """Return the columns for people, those that split the rows further with them."""
     columns = [column for column in COLUMNS[name] if column.name in table.columns or column.name == "solar"]
     known = {column.name for column in columns} | {"kind"}
-    further = [Shown(key, key, _text, 1, right=False) for key in table.columns if key not in known]
+    further = [Shown(key, key, text, 1, right=False) for key in table.columns if key not in known]
     if name == "reach" and not any(lon is not None for lon in table.lon_deg or []):
         columns = [column for column in columns if column.name != "solar"]
     return columns[:1] + further + columns[1:]
@@ -279,7 +123,7 @@ def _mark_near(cells: dict[str, list[str]], table: Table, kept: list[int]) -> No
     for row, i in enumerate(kept):
         distance_km, uncertainty_km = (table.columns[name][i] for name in ("distance_km", "uncertainty_km"))
         if distance_km is not None and distance_km < uncertainty_km:
-            cells["distance_km"][row] = f"< {_whole(uncertainty_km)}"
+            cells["distance_km"][row] = f"< {whole(uncertainty_km)}"
 
 
 def _width(column: Shown, cells: dict[str, list[str]], *, cut: bool = False) -> int:
@@ -353,20 +197,21 @@ def _line(row: tuple[str, ...], sides: Sequence[Callable[[str, int], str]], widt
 def _below(table: Table) -> list[str]:
     lines = []
     if table.summary is not None and table.summary["from"] is not None:
-        whole = table.summary
+        over_all = table.summary
         lines.append(
-            f"{_minute(whole['from'])} to {_minute(whole['to'])} UTC: {_count(whole['receptions'])} receptions of "
-            f"{_count(whole['senders'])} senders, {_count(whole['heard_once'])} of them heard once, in "
-            f"{_whole(whole['listening_min'] / 60)} h of listening ({whole['listening']})"
+            f"{minute(over_all['from'])} to {minute(over_all['to'])} UTC: "
+            f"{count(over_all['receptions'])} receptions of "
+            f"{count(over_all['senders'])} senders, {count(over_all['heard_once'])} of them heard once, in "
+            f"{whole(over_all['listening_min'] / 60)} h of listening ({over_all['listening']})"
         )
-        if whole["farthest_km"] is not None:
+        if over_all["farthest_km"] is not None:
             lines.append(
-                f"farthest heard again: {whole['farthest_sender']}, {_whole(whole['farthest_km'])} km; "
-                f"half of the located senders lie within {_whole(whole['median_km'])} km"
+                f"farthest heard again: {over_all['farthest_sender']}, {whole(over_all['farthest_km'])} km; "
+                f"half of the located senders lie within {whole(over_all['median_km'])} km"
             )
     for finding in table.findings or []:
         size = finding["size"]
-        amount = _count(size) if isinstance(size, int) else _tenth(size)
+        amount = count(size) if isinstance(size, int) else tenth(size)
         lines.append(
             f"{finding['what']}: {finding['receiver']}, {finding['from']} to {finding['to']}, "
             f"{amount} {finding['unit']}: {finding['why']}"
@@ -374,8 +219,8 @@ def _below(table: Table) -> list[str]:
     return lines
 
 
-def _some(count: int, what: str) -> str:
-    return f"{_count(count)} {what}{'' if count == 1 else 's'}"
+def _some(number: int, what: str) -> str:
+    return f"{count(number)} {what}{'' if number == 1 else 's'}"
 
 
 def _read(inputs: list[FileLedger]) -> list[str]:
@@ -384,6 +229,6 @@ def _read(inputs: list[FileLedger]) -> list[str]:
         f"read {_some(len(inputs), 'file')}, "
         f"{_some(sum(file.lines for file in inputs), 'line')}: "
         f"{_some(sum(file.records for file in inputs), 'record')}, "
-        f"{_count(sum(file.repeated for file in inputs))} repeated, {_count(aside)} set aside"
+        f"{count(sum(file.repeated for file in inputs))} repeated, {count(aside)} set aside"
     )
     return [told + (" (logtool check shows them)" if aside else "")]

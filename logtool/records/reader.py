@@ -4,9 +4,8 @@ from __future__ import annotations
 
 import os
 import tempfile
-import threading
 from collections import defaultdict
-from collections.abc import Callable, Iterable
+from collections.abc import Iterable
 from dataclasses import dataclass
 from itertools import pairwise
 from pathlib import Path
@@ -15,6 +14,7 @@ from typing import TYPE_CHECKING
 
 from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
+from logtool.records.progress import LOOK_SHARE, Polled, Progress
 from logtool.records.scan import EndlessLineError, Scan, ScanOptions, scan
 from logtool.records.sources import sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
@@ -24,10 +24,6 @@ if TYPE_CHECKING:
 
 LEAST_MEMORY_MB = 700  # what ten million lines need without spilling, measured
 MEMORY_SHARE = 0.8  # of the text's size, above that
-_POLL_S = 0.2  # between two looks at the engine's progress
-_LOOK_SHARE = 0.2  # of the time of reading, about, goes into looking over the bytes
-
-Progress = Callable[[str, float], None]  # told what is being done, and the share done
 
 
 @dataclass(frozen=True)
@@ -189,7 +185,7 @@ class Logs:
         done, whole = 0, max(1, sum(sizes))
 
         def told(file_bytes: int) -> None:
-            self._tell("looking over the files", _LOOK_SHARE * min(1, (done + file_bytes) / whole))
+            self._tell("looking over the files", LOOK_SHARE * min(1, (done + file_bytes) / whole))
 
         options = ScanOptions(self._options.with_digest, self._options.anyway, told)
         scans: list[Scan] = []
@@ -244,7 +240,7 @@ class Logs:
     def _make_tally(self, bounds: frozenset[int]) -> None:
         cuts = Cuts(self._make_cuts(), tuple(sorted(bounds)))
         lines = self.lines  # once: a file that changes from here on is read anew as a whole
-        with _Polled(self.connection, self._options.progress):
+        with Polled(self.connection, self._options.progress):
             self._odd = create_tally(self.connection, lines, cuts=cuts)
             repeats = drop_repeated(self.connection, lines, cuts=cuts)
         self._ledger = self._count(repeats)
@@ -292,32 +288,6 @@ class Logs:
     def _tell(self, what: str, share: float) -> None:
         if self._options.progress is not None:
             self._options.progress(what, share)
-
-
-class _Polled:
-    """While it is entered, ask the engine from a thread how far it is, and tell the progress."""
-
-    def __init__(self, connection: duckdb.DuckDBPyConnection, progress: Progress | None) -> None:
-        self._connection = connection
-        self._progress = progress
-        self._done = threading.Event()
-        self._thread = threading.Thread(target=self._poll, daemon=True)
-
-    def __enter__(self) -> None:
-        if self._progress is not None:
-            self._thread.start()
-
-    def __exit__(self, *_: object) -> None:
-        self._done.set()
-        if self._progress is not None:
-            self._thread.join()
-
-    def _poll(self) -> None:
-        assert self._progress is not None
-        while not self._done.wait(_POLL_S):
-            percent = self._connection.query_progress()
-            if percent >= 0:
-                self._progress("reading", _LOOK_SHARE + (1 - _LOOK_SHARE) * percent / 100)
 
 
 def _has_changed(seen: Scan) -> bool:

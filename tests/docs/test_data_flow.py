@@ -6,7 +6,7 @@ import re
 
 import pytest
 
-from logtool.pages.table import NOTHING
+from logtool.pages.columns import NOTHING
 from tests.docs import data_flow
 
 

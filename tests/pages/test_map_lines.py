@@ -100,9 +100,9 @@ def test_first_last_strongest_weakest_and_the_one_with_the_locator(tmp_path: Pat
 
 
 def test_a_line_that_only_looks_the_same_is_not_shown(tmp_path: Path) -> None:
-    good = heard("2026-03-01T21:00:00Z", snr_db=3, audio_hz=1500, text="z")
-    bad = heard("2026-03-01T21:00:00Z", snr_db=3, audio_hz=99999, text="a")
-    other = heard("2026-03-01T21:00:00Z", snr_db=3, audio_hz=1500, receiver="isle", locator="KO02")
+    good = heard("2026-03-01T21:00:00Z", snr_db=3, audio_hz=2500)
+    bad = heard("2026-03-01T21:00:00Z", snr_db=3, audio_hz=1500, power_dbm=99)
+    other = heard("2026-03-01T21:00:00Z", snr_db=3, audio_hz=2500, receiver="den", locator="KO02")
     lines = [setup("2026-03-01T20:00:00Z"), bad, other, good, "", "", good]
     assert shown_in(write(tmp_path, lines[:2] + lines[3:])) == [("000.log", 3, "2026-03-01T21:00:00Z")]
     folder = write(tmp_path, lines[:1] + lines[2:])

@@ -20,7 +20,7 @@ def time_parts(text: str) -> tuple[int, ...] | None:
         if sign != "d" and character != sign:
             return None
     point, decimals = text[19:20], text[20:-1]
-    if point != "Z" and (point != "." or not 1 <= len(decimals) <= 6 or not only(decimals, DIGITS)):
+    if text[19:] != "Z" and (point != "." or not 1 <= len(decimals) <= 6 or not only(decimals, DIGITS)):
         return None
     parts = [int(text[a:b]) for a, b in ((0, 4), (5, 7), (8, 10), (11, 13), (14, 16), (17, 19))]
     microsecond = int((decimals + "000000")[:6])
