@@ -155,6 +155,12 @@ def test_the_map_of_the_sample_in_the_browser(page: Page, tmp_path: Path, sample
     page.open(path)
     assert page.requests() == [path.as_uri()]
     assert drawn(page) == str(sum(row["locator"] is not None for row in senders))
+    farthest_km: list[float | None] = [None] * 16
+    for row in senders:
+        if row["heard_again"] and row["bearing_deg"] is not None:
+            k = int((row["bearing_deg"] + 11.25) / 22.5) % 16
+            farthest_km[k] = max(farthest_km[k] or 0, round(row["distance_km"], 2))
+    assert page.evaluate("logtoolMap.choice.farthest(logtoolMap.page.heard, 0)") == farthest_km
     hours = sorted({row["hour"] for row in rows})
     for i, summary in in_hour.items():
         slide(page, 1 + hours.index(rows[i]["hour"]))

@@ -96,11 +96,12 @@ logtoolMap.choice = (() => {
   }
 
   // The farthest distance in each of 16 sectors of bearing, sector k centred at 22.5 k degrees; null where none.
+  // A sender heard once may be a false decode, so only those heard again count.
   function farthest(senders, receiver) {
     const out = new Array(16).fill(null);
     for (const one of senders.filter(({ placed }) => placed)) {
-      for (const { receiver: by, bearing, km } of one.pairs) {
-        if (by !== receiver || bearing === null || km === null) continue;
+      for (const { receiver: by, bearing, km, again } of one.pairs) {
+        if (by !== receiver || bearing === null || km === null || !again) continue;
         const k = Math.floor((bearing + 11.25) / 22.5) % 16;
         if (out[k] === null || km > out[k]) out[k] = km;
       }

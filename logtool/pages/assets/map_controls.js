@@ -74,7 +74,7 @@ logtoolMap.controls = (() => {
       row.append(item);
     };
     mark("mark", "receiver");
-    if (page.layers.outline) mark("stroke", "farthest by bearing, open where nobody was heard");
+    if (page.layers.outline) mark("stroke", "farthest heard again, by bearing; open where nobody was");
     return row;
   }
 
