@@ -14,8 +14,8 @@ from pathlib import Path
 from typing import Any
 
 from logtool import open_logs
-from logtool.pages.map import map_data_of
 from logtool.pages.columns import NOTHING
+from logtool.pages.map import map_data_of
 from logtool.pages.table import write_table
 from logtool.records.layout import COLUMN_NAMES
 from logtool.records.reader import Logs

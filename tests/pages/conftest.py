@@ -10,7 +10,7 @@ import pytest
 
 sys.path.insert(0, str(Path(__file__).parent.parent))
 
-from browser import Page, browser_page
+from tests.browser import Page, browser_page
 
 
 @pytest.fixture(scope="session")

@@ -6,10 +6,9 @@ import json
 from pathlib import Path
 from typing import Any
 
-from browser import Page
-
 from logtool.pages.map_data import MapData
 from logtool.pages.map_page import map_html
+from tests.browser import Page
 
 SLIDE = """((position) => {
   const slider = document.getElementById("hour-slider");

@@ -6,11 +6,11 @@ from pathlib import Path
 from typing import TypeVar
 
 import pytest
-from browser import Page
-from map_cases import around, small, spread, with_island
-from map_window import choose, drawn, open_map, pixels, select, slide, text, toggle
 
 from logtool.pages.map_data import MapCounts, MapTotals
+from tests.browser import Page
+from tests.pages.map_cases import around, small, spread, with_island
+from tests.pages.map_window import choose, drawn, open_map, pixels, select, slide, text, toggle
 
 pytestmark = pytest.mark.browser
 

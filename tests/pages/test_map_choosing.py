@@ -5,11 +5,11 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
-from browser import Page
-from map_cases import around, small
-from map_window import chosen, circle, open_map, select, slide, text
 
 from logtool.pages.map_data import MapLine
+from tests.browser import Page
+from tests.pages.map_cases import around, small
+from tests.pages.map_window import chosen, circle, open_map, select, slide, text
 
 pytestmark = pytest.mark.browser
 

@@ -6,13 +6,13 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from browser import Page
-from map_cases import around, spread
-from map_window import call, drawn, open_map, pixels, select, slide, text, toggle
 from pyproj import Geod
 
 from logtool.places.geodesic import circle_points
 from logtool.places.locator import centre
+from tests.browser import Page
+from tests.pages.map_cases import around, spread
+from tests.pages.map_window import call, drawn, open_map, pixels, select, slide, text, toggle
 
 pytestmark = pytest.mark.browser
 

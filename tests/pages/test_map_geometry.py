@@ -6,13 +6,13 @@ import json
 
 import numpy as np
 import pytest
-from browser import Page
-from map_cases import small
 from pyproj import Geod
-from test_map_style import EDGE_LIGHT, MARK_CONTRAST, colours, contrast
 
 from logtool.pages.map_page import map_html
 from logtool.places.geodesic import circle_points
+from tests.browser import Page
+from tests.pages.map_cases import small
+from tests.pages.test_map_style import EDGE_LIGHT, MARK_CONTRAST, colours, contrast
 
 pytestmark = pytest.mark.browser
 

@@ -6,11 +6,11 @@ import json
 from dataclasses import replace
 
 import pytest
-from map_cases import around, small, spread
 
 from logtool.errors import LogtoolError
 from logtool.pages.map_data import MapCounts
 from logtool.pages.map_json import map_payload, ring_radii_km, script_safe_json
+from tests.pages.map_cases import around, small, spread
 
 HOSTILE = (
     "</script><img src=x onerror=alert(1)>",

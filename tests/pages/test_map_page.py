@@ -11,9 +11,9 @@ from dataclasses import replace
 from pathlib import Path
 
 import pytest
-from map_cases import around, small, spread
 
 from logtool.pages.map_page import POLICY, map_html
+from tests.pages.map_cases import around, small, spread
 
 MB = 1_000_000
 WEEK_LIMIT_BYTES = 2 * MB  # the page of a week of 300 000 lines; 4 MB is the most allowed
@@ -24,7 +24,7 @@ SECONDS = 2.0  # what is measured is about 0.1; the limit is for a loaded machin
 PRINT_DIGEST = """
 import hashlib, sys
 sys.path.insert(0, sys.argv[1])
-from map_cases import around, spread
+from tests.pages.map_cases import around, spread
 from logtool.pages.map_page import map_html
 print(hashlib.sha256(map_html(around("JO74xa", spread(50, unplaced=2))).encode()).hexdigest())
 """
