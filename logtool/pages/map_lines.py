@@ -79,8 +79,9 @@ def lines_behind(logs: Logs) -> dict[Pair, tuple[MapLine, ...]]:
         for one in found:
             wanted[one.file].add(one.raw)
     number_of: dict[tuple[int, bytes], int] = {}
+    paths = logs.paths
     for file, left in wanted.items():
-        for number, raw in line_numbers(logs.paths[file], left):
+        for number, raw in line_numbers(paths[file], left):
             number_of[file, raw] = number
             left.remove(raw)
     return {

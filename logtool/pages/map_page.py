@@ -117,6 +117,7 @@ def _head() -> tuple[str, ...]:
         '<meta name="color-scheme" content="light dark" />',
         '<link rel="icon" href="data:," />',
         f"<style>{_leaflet_style()}\n{_asset('map.css')}</style>",
+        f"<!--\n{_asset('leaflet_licence.txt')}-->",
         f"<script>{_leaflet_script()}</script>",
         f'<script>"use strict";\nconst logtoolMap = {{}};\n{own_script}</script>',
     )

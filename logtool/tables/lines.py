@@ -27,13 +27,14 @@ def lines_table(logs: Logs, choice: Choice) -> Table:
     for file, raw, time_us, fields in rows:
         wanted[file][raw.encode()] = (time_us, fields)
     columns: dict[str, list[Any]] = {name: [] for name in ("file", "line", *(c.name for c in COLUMNS))}
+    paths, names = logs.paths, logs.file_names
     for file in sorted(wanted):
         left = wanted[file]
-        for number, raw in line_numbers(logs.paths[file], left):
+        for number, raw in line_numbers(paths[file], left):
             if raw not in left:
                 continue
             time_us, fields = left.pop(raw)
-            values = [logs.file_names[file], number, time_us, *map(_read, COLUMNS[1:], fields[1:])]
+            values = [names[file], number, time_us, *map(_read, COLUMNS[1:], fields[1:])]
             for name, value in zip(columns, values, strict=True):
                 columns[name].append(value)
     table = Table(columns)

@@ -55,6 +55,17 @@ def test_nothing_is_fetched() -> None:
     assert POLICY in page
 
 
+def test_the_terms_of_what_is_carried_go_with_it() -> None:
+    """The BSD 2-Clause licence, from memory."""
+    page = map_html(small())
+    for words in (
+        "Vladimir Agafonkin",
+        "Redistributions of source code must retain",
+        "PROVIDED BY THE COPYRIGHT HOLDERS",
+    ):
+        assert words in page
+
+
 def test_the_script_that_is_carried_is_the_one_that_folium_asks_for() -> None:
     import folium
     import xstatic.pkg.leaflet
