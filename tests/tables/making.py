@@ -45,7 +45,7 @@ def setup(time: str, locator: str = "JN58td", antenna: str = "wire", **fields: A
     return line("setup", time, locator=locator, more=f"antenna={antenna}", **{"dial_hz": 7074000} | fields)
 
 
-def watch(time: str, on_s: float, **fields: Any) -> str:
+def watch(time: str, on_s: float | str, **fields: Any) -> str:
     return line("watch", time, more=f"on_s={on_s}", **{"dial_hz": 7074000} | fields)
 
 

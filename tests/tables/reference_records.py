@@ -1,7 +1,7 @@
 """Receptions and listening as the tables should see them: one object a record, loops, nothing clever.
 
-Written from the rules in words, not from the package: it takes from there only the distances, the nights and
-the sun, which are checked against outside values in `tests/places`.
+Written from the rules in words. It takes from the package only the distances, the nights and the sun, which
+`tests/places` holds against outside values.
 """
 
 from __future__ import annotations
@@ -10,6 +10,7 @@ from collections import Counter, defaultdict
 from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import UTC, date, datetime, timedelta
+from decimal import Decimal
 from functools import cache
 from itertools import pairwise
 
@@ -41,10 +42,8 @@ class Reception:
     """One heard line, with all that is learned about it from the other lines."""
 
     at_us: int
-    receiver: str
     place: Place
     band: str
-    dial_hz: int
     mode: str
     sender: str
     addressee: str
@@ -101,8 +100,7 @@ class World:
 
 
 def us(record: Record) -> int:
-    since = record.time.replace(tzinfo=UTC) - EPOCH
-    return since // timedelta(microseconds=1)
+    return (record.time.replace(tzinfo=UTC) - EPOCH) // timedelta(microseconds=1)
 
 
 def written(locator: str) -> str:
@@ -153,7 +151,7 @@ def make_world(
     for receiver in {record.receiver for record in records}:
         places[receiver] = _places(receiver, setups.get(receiver, {}), at, antenna_name)
 
-    receptions = []
+    receptions: list[Reception] = []
     for file, number, raw, record in found:
         if record.kind != "heard":
             continue
@@ -161,8 +159,7 @@ def make_world(
         assert record.dial_hz is not None
         receptions.append(
             Reception(
-                us(record), record.receiver, place, band_name(record.dial_hz), record.dial_hz, record.mode,
-                record.sender, record.addressee,
+                us(record), place, band_name(record.dial_hz), record.mode, record.sender, record.addressee,
                 record.locator.upper() if len(record.locator) >= 4 else "",
                 None if record.snr_db is None else float(record.snr_db), record.text,
                 night_at(us(record) // HOUR_US, place.lon_deg),
@@ -179,8 +176,8 @@ def make_world(
         own = [record for record in records if record.receiver == receiver]
         tuned = [(us(r), r.dial_hz) for r in own if r.kind == "heard"]
         tuned += [(since_us, setup.dial_hz) for since_us, setup in setups.get(receiver, {}).items()]
-        listened = _recorded(own, tuned) if receiver in watched else _assumed(own, tuned, gap_min)
         way = "recorded" if receiver in watched else "assumed"
+        listened = _recorded(own, tuned) if way == "recorded" else _assumed(own, tuned, gap_min)
         for band, stretches in listened.items():
             for from_us, to_us in _joined(stretches):
                 world.spells += _cut(from_us, to_us, places[receiver], band, way)
@@ -255,16 +252,15 @@ def _recorded(own: list[Record], tuned: list[tuple[int, int | None]]) -> Stretch
         if watch.kind != "watch":
             continue
         end_us = us(watch)
-        from_us = end_us - int(_on_s(watch) * SECOND_US)
+        from_us = end_us - int(Decimal(dict(watch.more)["on_s"]) * SECOND_US)
         inside = [stop_us for stop_us in stops if from_us < stop_us < end_us]
         for dial in {watch.dial_hz} if watch.dial_hz else _dials(tuned, end_us - 1):
-            band = band_name(dial) if dial else None
-            stretches[band].append((from_us, min([*inside, end_us])))
+            stretches[_band(dial)].append((from_us, min([*inside, end_us])))
     return stretches
 
 
-def _on_s(watch: Record) -> float:
-    return float(dict(watch.more)["on_s"])
+def _band(dial: int | None) -> str | None:
+    return band_name(dial) if dial else None
 
 
 def _assumed(own: list[Record], tuned: list[tuple[int, int | None]], gap_min: float) -> Stretches:
@@ -275,7 +271,7 @@ def _assumed(own: list[Record], tuned: list[tuple[int, int | None]], gap_min: fl
         if from_us in stops or to_us - from_us > gap_min * MINUTE_US:
             continue
         for dial in _dials(tuned, from_us):
-            stretches[band_name(dial) if dial else None].append((from_us, to_us))
+            stretches[_band(dial)].append((from_us, to_us))
     return stretches
 
 

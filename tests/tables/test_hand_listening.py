@@ -10,7 +10,7 @@ import pytest
 from logtool import open_logs
 from logtool.tables.checks import check_table
 from logtool.tables.choice import choose
-from tests.tables.making import heard, line, note, rows_of, setup, stop, watch, write
+from tests.tables.making import heard, line, note, rows_of, setup, stop, table, watch, write
 
 AT = "2026-03-01T21:{}Z"
 
@@ -117,9 +117,7 @@ def test_one_watch_anywhere_ends_all_assuming(tmp_path: Path) -> None:
     both = [*lines, heard(AT.format("00:00"), receiver="isle"), heard(AT.format("05:00"), receiver="isle")]
     assert [row["listening"] for row in rows_of(tmp_path, both, "reach")] == ["recorded", "assumed"]
     with open_logs(tmp_path) as logs:
-        from logtool.tables.reach import reach_table
-
-        summary = reach_table(logs, choose()).written_summary() or {}
+        summary = table(logs, "reach").written_summary() or {}
     assert (summary["listening"], summary["listening_min"], summary["receiver"]) == ("mixed", 5.0, None)
 
 
@@ -130,7 +128,7 @@ def test_a_reception_outside_every_watch(tmp_path: Path) -> None:
 
 @pytest.mark.parametrize("on_s", ["0", "0.0", "-0"])
 def test_a_watch_of_no_seconds_is_no_listening(tmp_path: Path, on_s: str) -> None:
-    assert minutes(tmp_path, [watch(AT.format("10:00"), on_s)]) == {}  # type: ignore[arg-type]
+    assert minutes(tmp_path, [watch(AT.format("10:00"), on_s)]) == {}
 
 
 def test_a_stop_cuts_a_watch_only_strictly_inside(tmp_path: Path) -> None:

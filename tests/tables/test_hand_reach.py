@@ -221,11 +221,16 @@ def test_a_nights_share_is_the_mean_over_its_hours(tmp_path: Path) -> None:
         heard("2026-03-01T21:30:00Z", "Q1"),  # 1 and 1 in the second, of 30
         heard("2026-03-01T21:31:00Z", "Q2", mode="S2"),
         heard("2026-03-01T23:31:00Z", "Q3"),
+        heard("2026-03-01T23:40:00Z", "Q3", mode="T3"),
     ]
     (row,) = rows_of(tmp_path, lines, "nights")
     assert row["senders_in_30"] == round((0.5 + 2 + 0) / 3, 3)
     split = {row["mode"]: row["senders_in_30"] for row in rows_of(tmp_path, lines, "nights", by="mode")}
-    assert split == {"K8": 0.5, "S2": 0.333}  # an hour in which a mode was not heard counts as any other
+    assert split == {
+        "K8": 0.5,
+        "S2": 0.333,
+        "T3": 0.0,
+    }  # an hour in which a mode was not heard counts as any other
     assert split["S2"] == rows_of(tmp_path, lines, "nights", mode="S2")[0]["senders_in_30"]
 
 

@@ -171,6 +171,21 @@ def test_over_several_hours_own_locators_come_first_and_borrowed_ones_last(tmp_p
     )
 
 
+def test_hours_in_which_others_heard_a_locator_come_before_borrowed_ones(tmp_path: Path) -> None:
+    lines = [
+        SETUP,
+        heard("2026-03-01T21:00:00Z"),
+        heard("2026-03-01T21:30:00Z", locator="JN48", receiver="isle"),
+        heard("2026-03-01T23:00:00Z"),  # borrows KO02, as does the next
+        heard("2026-03-01T23:10:00Z"),
+        heard("2026-03-02T00:30:00Z", locator="KO02", receiver="isle"),
+    ]
+    (row,) = rows_of(tmp_path, lines, "senders", receiver="hut")
+    assert (row["receptions"], row["locator"], row["borrowed"]) == (3, "JN48", False)
+    (row,) = rows_of(tmp_path, lines, "senders", receiver="hut", from_="2026-03-01T23:00:00Z")
+    assert (row["receptions"], row["locator"], row["borrowed"]) == (2, "KO02", True)
+
+
 def test_the_figures_of_a_sender(tmp_path: Path) -> None:
     lines = [
         SETUP,

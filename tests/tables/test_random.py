@@ -13,7 +13,7 @@ from tests.tables.drawing import drawn
 from tests.tables.making import write
 
 
-@settings(max_examples=40, deadline=None, derandomize=True, database=None)
+@settings(max_examples=30, deadline=None, derandomize=True, database=None)
 @given(seed=st.integers(0, 10**6))
 def test_tables_are_the_references(seed: int) -> None:
     log = drawn(seed)
