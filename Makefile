@@ -38,6 +38,10 @@ check: $(READY)
 bench: $(READY)
 	$(BIN)/python -m tests.benchmarks.run
 
+pictures: $(READY)
+	$(BIN)/python -m pip install --quiet --disable-pip-version-check --constraint constraints.txt pillow
+	$(BIN)/python -m tests.docs.picture
+
 wheel: $(READY)
 	$(BIN)/python -m pip wheel --quiet --no-deps --wheel-dir dist .
 

@@ -55,10 +55,12 @@ def choice_of(words: dict[str, Any]) -> Choice:
 @contextmanager
 def opened(words: dict[str, Any], *, with_digest: bool) -> Iterator[Logs]:
     """Open the logs of a call, with progress on a terminal; write what was set aside if it is wanted."""
+    from logtool.cli.memory import keep_freed_memory
     from logtool.cli.progress import ProgressBar
     from logtool.records.opening import open_with
     from logtool.records.reader import OpenOptions
 
+    keep_freed_memory()
     with ProgressBar(quiet=words["quiet"]) as bar:
         options = OpenOptions(with_digest=with_digest, anyway=words["anyway"], progress=bar)
         with open_with(words["paths"], words["at"], words["antenna_name"], options) as logs:
@@ -145,8 +147,23 @@ def _write_json(out: IO[str], name: str, words: dict[str, Any], logs: Logs, tabl
     notes = [*logs.refused, *logs.notes, *table.notes]
     if notes:
         told["notes"] = notes
-    json.dump(told, out, ensure_ascii=True, allow_nan=False, indent=1)
-    out.write("\n")
+    _write_object(out, told)
+
+
+def _write_object(out: IO[str], told: dict[str, Any]) -> None:
+    """Write a JSON object with an entry a line, and lists of objects with an object a line."""
+    entries = []
+    for name, value in told.items():
+        if isinstance(value, list) and value and isinstance(value[0], dict):
+            text = "[\n" + ",\n".join(f"  {_json(item)}" for item in value) + "\n ]"
+        else:
+            text = _json(value)
+        entries.append(f" {_json(name)}: {text}")
+    out.write("{\n" + ",\n".join(entries) + "\n}\n")
+
+
+def _json(value: Any) -> str:
+    return json.dumps(value, allow_nan=False)
 
 
 def _write_csv(out: IO[str], table: Table) -> None:

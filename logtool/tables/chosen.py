@@ -112,11 +112,12 @@ def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -
     """
     group = (*keys, "sender")
     listed = ", ".join(group)
+    nights = "1::BIGINT" if "hour" in keys else "count(DISTINCT night)"
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE of_sender AS
         SELECT row_number() OVER () AS id, * FROM (
             SELECT {listed}, list(row) AS rows, sum(n)::BIGINT AS n, bool_or(again) AS again,
-                min(first_us) AS first_us, max(last_us) AS last_us, count(DISTINCT night) AS nights,
+                min(first_us) AS first_us, max(last_us) AS last_us, {nights} AS nights,
                 arg_max(place, (last_us, place)) AS place, any_value(locator) AS hour_locator,
                 any_value(borrowed) AS hour_borrowed
             FROM heard WHERE sender <> '' GROUP BY {listed})""")

@@ -17,7 +17,7 @@ from logtool.records.layout import COLUMN_NAMES
 from logtool.records.tally import HOUR_US
 from logtool.tables.choice import Choice
 from logtool.tables.listening import make_listening, make_stretches
-from logtool.tables.locators import make_own_hours, make_pairs, make_sender_hours
+from logtool.tables.locators import make_own_hours, make_sender_hours
 from logtool.tables.stations import stations
 
 if TYPE_CHECKING:
@@ -36,7 +36,7 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     `rollup` has receiver (its name), antenna, place, lon_deg, listening, band, mode, sender (empty: unnamed),
     hour, start_us, night, n, first_us, last_us, again (a reception of it was heard again), row (of `tally`, for its
     lists), locator and borrowed (of the sender in the hour). `listening` says when the receiver
-    listened, `pair` how far it is from a place to a locator.
+    listened.
 
     Parameters
     ----------
@@ -59,7 +59,6 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
     _make_pieces(connection)
     make_sender_hours(connection, "sender_hour", "SELECT DISTINCT sender, hour FROM piece WHERE sender <> ''")
     _make_rollup(connection)
-    make_pairs(connection, "SELECT DISTINCT place, locator FROM rollup")
     logs.rolled_up_for = wanted
     return connection
 
