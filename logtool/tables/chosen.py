@@ -21,7 +21,7 @@ MOST_NAMED = 20  # names that a note lists; our choice
 
 
 def make_chosen(logs: Logs, choice: Choice) -> tuple[duckdb.DuckDBPyConnection, list[str]]:
-    """Make the views `heard` and `listened` of what the choice counts; return the connection and notes.
+    """Make the tables `heard` and `listened` of what the choice counts; return the connection and notes.
 
     `heard` has the columns of `rollup`, `listened` those of `listening`, `night` by its name and `whole` (true)
     in both.
@@ -30,7 +30,7 @@ def make_chosen(logs: Logs, choice: Choice) -> tuple[duckdb.DuckDBPyConnection, 
     for name, source in (("heard", "rollup"), ("listened", "listening")):
         where = " AND ".join(conditions(choice, of_receptions=name == "heard"))
         connection.execute(f"""
-            CREATE OR REPLACE TEMP VIEW {name} AS
+            CREATE OR REPLACE TEMP TABLE {name} AS
             SELECT * EXCLUDE (night), true AS whole, strftime(DATE '1970-01-01' + night::INTEGER, '%Y-%m-%d') AS night
             FROM {source} WHERE {where}""")
     return connection, unknown_words(connection, choice)
