@@ -73,6 +73,8 @@ def cli() -> None:
 
 def main() -> None:
     """Run the command line and exit with the status that the docs state; no traceback is shown."""
+    sys.stdout = sys.stdout or open(os.devnull, "w")  # noqa: SIM115 - closed by the caller: nothing is to be shown
+    sys.stderr = sys.stderr or open(os.devnull, "w")  # noqa: SIM115
     try:
         status = cli.main(prog_name="logtool", standalone_mode=False)
     except click.ClickException as error:

@@ -9,6 +9,7 @@ import click
 
 from logtool.cli import options
 from logtool.cli.run import choice_of, opened, status_of, told_options
+from logtool.errors import NoRecordsError
 
 STANDARD_OUTPUT = "-"
 _NOT_TOLD = ("out", "set_aside", "quiet", "title")  # paths of the maker's machine, and what changes no figure
@@ -38,7 +39,10 @@ def command(**words: Any) -> int:
             for name, value in told_options(words).items()
             if name not in _NOT_TOLD and value not in (None, [], False)
         ]
-        page = map_text(logs, choice, title=words["title"], options=told)
+        try:
+            page = map_text(logs, choice, title=words["title"], options=told)
+        except NoRecordsError:
+            return status_of(logs, quiet=words["quiet"], notes=[])
         if words["out"] == STANDARD_OUTPUT:
             sys.stdout.write(page)
         else:

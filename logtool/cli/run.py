@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import json
+import os
 import sys
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager, nullcontext
@@ -40,7 +41,7 @@ def told_options(words: dict[str, Any]) -> dict[str, Any]:
     """Return the options of a call by their names on the command line, defaults too."""
     return {
         _NAMES.get(name, name): list(value) if isinstance(value, tuple) else value
-        for name, value in words.items()
+        for name, value in sorted(words.items())
         if name != "paths"
     }
 
@@ -62,12 +63,25 @@ def opened(words: dict[str, Any], *, with_digest: bool) -> Iterator[Logs]:
 
     keep_freed_memory()
     with ProgressBar(quiet=words["quiet"]) as bar:
-        options = OpenOptions(with_digest=with_digest, anyway=words["anyway"], progress=bar)
+        options = OpenOptions(with_digest=with_digest, anyway=words["anyway"], others_too=True, progress=bar)
         with open_with(words["paths"], words["at"], words["antenna_name"], options) as logs:
+            _spare_inputs(logs, words)
             yield logs
             bar.close()
             if words["set_aside"] is not None:
                 _write_set_aside(logs, words["set_aside"])
+
+
+def _spare_inputs(logs: Logs, words: dict[str, Any]) -> None:
+    """Stop where an output would take the place of an input or of the other output."""
+    outputs = [words[name] for name in ("out", "set_aside") if words.get(name) not in (None, "-")]
+    real = [os.path.realpath(output) for output in outputs]
+    inputs = {os.path.realpath(path) for path in logs.source_paths}
+    for output, place in zip(outputs, real, strict=True):
+        if place in inputs:
+            raise UsageError(f"{output} is one of the logs; name another file to write to")
+    if len(set(real)) < len(real):
+        raise UsageError(f"--out and --set-aside both name {outputs[0]}; name two files")
 
 
 def _write_set_aside(logs: Logs, path: str) -> None:

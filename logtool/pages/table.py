@@ -123,7 +123,7 @@ def _mark_near(cells: dict[str, list[str]], table: Table, kept: list[int]) -> No
     for row, i in enumerate(kept):
         distance_km, uncertainty_km = (table.columns[name][i] for name in ("distance_km", "uncertainty_km"))
         if distance_km is not None and distance_km < uncertainty_km:
-            cells["distance_km"][row] = f"< {whole(uncertainty_km)}"
+            cells["distance_km"][row] = f"< {whole(max(1.0, uncertainty_km))}"
 
 
 def _width(column: Shown, cells: dict[str, list[str]], *, cut: bool = False) -> int:
@@ -202,7 +202,7 @@ def _below(table: Table) -> list[str]:
             f"{minute(over_all['from'])} to {minute(over_all['to'])} UTC: "
             f"{count(over_all['receptions'])} receptions of "
             f"{count(over_all['senders'])} senders, {count(over_all['heard_once'])} of them heard once, in "
-            f"{whole(over_all['listening_min'] / 60)} h of listening ({over_all['listening']})"
+            f"{tenth(over_all['listening_min'] / 60)} h of listening ({over_all['listening']})"
         )
         if over_all["farthest_km"] is not None:
             lines.append(

@@ -16,7 +16,7 @@ from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
 from logtool.records.progress import LOOK_SHARE, Polled, Progress
 from logtool.records.scan import EndlessLineError, Scan, ScanOptions, scan
-from logtool.records.sources import sources_of
+from logtool.records.sources import UnreadableError, sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
 
 if TYPE_CHECKING:
@@ -39,12 +39,15 @@ class Setup:
 
 @dataclass(frozen=True)
 class OpenOptions:
-    """How logs are opened beside their places: threads, memory, digests, strangers, progress."""
+    """How logs are opened beside their places: threads, memory, digests, strangers, the others, progress."""
 
     threads: int | None = None
     memory_mb: int | None = None
     with_digest: bool = True
     anyway: bool = False
+    others_too: bool = (
+        False  # read the other files where one is missing or unreadable, and name it in `refused`
+    )
     progress: Progress | None = None
 
 
@@ -127,6 +130,11 @@ class Logs:
         return [scan.source.name for scan in self._scans]
 
     @property
+    def source_paths(self) -> list[Path]:
+        """The paths of the files that are read, as the user names them; standard input has none."""
+        return [scan.source.path for scan in self._scans if scan.source.path is not None]
+
+    @property
     def inputs(self) -> list[FileLedger]:
         """The ledger of each file that was read."""
         self.tally()
@@ -180,7 +188,8 @@ class Logs:
         return [(names[i], n, reason, line) for i, n, reason, line in sorted(found)]
 
     def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:
-        sources = sources_of(paths)
+        unread: list[str] = []
+        sources = sources_of(paths, unread if self._options.others_too else None)
         sizes = [source.path.stat().st_size if source.path else 0 for source in sources]
         done, whole = 0, max(1, sum(sizes))
 
@@ -196,6 +205,11 @@ class Logs:
                 refused = seen.refused and f"{source.name}: {seen.refused}"
             except EndlessLineError as error:
                 refused = str(error)
+            except UnreadableError as error:
+                if not self._options.others_too:
+                    raise
+                unread.append(str(error))
+                continue
             done += size
             if refused:
                 self.refused.append(refused)
@@ -204,6 +218,9 @@ class Logs:
             if seen.broken:
                 self.notes.append(f"{source.name}: read up to a break: {seen.broken}")
             scans.append(seen)
+        if unread and not scans and not self.refused:
+            raise UnreadableError("\n".join(unread))
+        self.refused += unread
         return scans
 
     def _path_of(self, index: int, again: str = "") -> Path:

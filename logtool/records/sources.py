@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import os
+import stat
 import sys
 import zlib
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from pathlib import Path
 from typing import IO, Any
@@ -32,26 +33,43 @@ class Source:
         return next((end for end in PACKED_ENDINGS if self.name.lower().endswith(end)), "")
 
 
-def sources_of(paths: tuple[str | os.PathLike[str], ...]) -> list[Source]:
+class UnreadableError(FileError):
+    """A file or folder that is not there or may not be read; the others can be."""
+
+
+def sources_of(paths: tuple[str | os.PathLike[str], ...], unread: list[str] | None = None) -> list[Source]:
     """Return the files behind the paths: sorted by path, standard input last, each real file once.
 
     A folder stands for all files in it, deeper ones too, that end in `.log`, `.txt` or `.tsv`, or in
     these with `.gz` or `.zst`.
 
+    Parameters
+    ----------
+    paths : tuple of str or path
+        What the user names.
+    unread : list of str, optional
+        Takes a message for each path that does not exist and folder that cannot be listed.
+
     Raises
     ------
-    FileError
-        Where a path does not exist or a folder cannot be listed.
+    UnreadableError
+        Where there is such a path and no list for it.
     UsageError
         Where no path is given.
     """
     if not paths:
         raise UsageError("no log is named; give files, folders, or - for standard input")
+
+    def refuse(message: str) -> None:
+        if unread is None:
+            raise UnreadableError(message)
+        unread.append(message)
+
     names: list[str] = []
     for path in paths:
         name = os.fspath(path)
         if name != STDIN and os.path.isdir(name):  # not by `Path`, to which an empty name is the folder here
-            names += _files_in(Path(name))
+            names += _files_in(Path(name), refuse)
         else:
             names.append(name)
     sources: list[Source] = []
@@ -59,27 +77,44 @@ def sources_of(paths: tuple[str | os.PathLike[str], ...]) -> list[Source]:
     for name in sorted(set(names) - {STDIN}):
         file = Path(name)
         if not os.path.exists(name):
-            raise FileError(f"{name}: there is no such file or folder, or no right to look; check the path")
+            refuse(f"{shown(name)}: there is no such file or folder, or no right to look; check the path")
+            continue
         real = str(file.resolve())
         if real not in seen:
             seen.add(real)
-            sources.append(Source(name, file))
+            sources.append(Source(shown(name), file))
     return sources + ([Source(STDIN, None)] if STDIN in names else [])
 
 
-def _files_in(folder: Path) -> list[str]:
-    def refuse(error: OSError) -> None:
-        raise FileError(f"{error.filename}: the folder cannot be listed ({error.strerror})")
+def shown(name: str) -> str:
+    """Return a file's name as text that can be written: bytes that are not UTF-8 as escapes."""
+    return os.fsencode(name).decode("utf-8", "backslashreplace") if name else "''"
+
+
+def _files_in(folder: Path, refuse: Callable[[str], None]) -> list[str]:
+    def unlisted(error: OSError) -> None:
+        refuse(f"{shown(str(error.filename))}: the folder cannot be listed ({error.strerror})")
 
     found = []
-    for base, _, files in os.walk(folder, onerror=refuse):
+    for base, _, files in os.walk(folder, onerror=unlisted):
         for file in files:
+            if _is_special(Path(base) / file):
+                continue
             stem = file.lower()
             for ending in PACKED_ENDINGS:
                 stem = stem.removesuffix(ending)
             if stem.endswith(LOG_ENDINGS):
                 found.append(str(Path(base) / file))
     return found
+
+
+def _is_special(path: Path) -> bool:
+    """Return whether a name in a folder is a pipe, a socket or a device, which are no logs."""
+    try:
+        mode = path.stat().st_mode
+    except OSError:
+        return False  # the user is told when it is opened
+    return not stat.S_ISREG(mode)
 
 
 class Text:
@@ -106,13 +141,15 @@ class Text:
                 else:
                     yield from self._stored(file)
         except OSError as error:
-            raise FileError(
+            raise UnreadableError(
                 f"{self.source.name}: cannot be read ({error.strerror or error}); "
                 "check the file and its rights"
             ) from error
 
     def _open(self) -> IO[bytes]:
         if self.source.path is None:
+            if sys.stdin is None:
+                raise OSError("standard input is closed")
             return os.fdopen(os.dup(sys.stdin.fileno()), "rb")
         return self.source.path.open("rb", buffering=0)
 

@@ -33,7 +33,10 @@ def log(tmp_path_factory: pytest.TempPathFactory) -> Path:
 def test_a_bare_script_gives_the_same_rows(peer: str, log: Path) -> None:
     pytest.importorskip(peer)
     done = subprocess.run(
-        [sys.executable, "-m", f"tests.benchmarks.peer_{peer}", str(log)], capture_output=True, check=True, cwd=ROOT
+        [sys.executable, "-m", f"tests.benchmarks.peer_{peer}", str(log)],
+        capture_output=True,
+        check=True,
+        cwd=ROOT,
     )
     theirs = json.loads(done.stdout)
     with open_logs(log) as logs:

@@ -199,3 +199,82 @@ def test_help_of_every_command_names_its_options() -> None:
         done = call(command, "--help")
         assert done.returncode == 0
         assert "--at LOCATOR" in done.stdout
+
+
+def test_no_output_takes_the_place_of_a_log_or_of_the_other(tmp_path: Path) -> None:
+    log = tmp_path / "a.log"
+    log.write_text(GOOD)
+    (tmp_path / "link.txt").symlink_to(log)
+    for words in (
+        ["reach", "-o", log, log],
+        ["check", "--set-aside", log, tmp_path],
+        ["map", "-o", tmp_path / "link.txt", log],
+    ):
+        done = call(*words)
+        assert done.returncode == 2
+        assert "is one of the logs" in done.stderr
+        assert log.read_text() == GOOD
+    done = call("check", "--set-aside", tmp_path / "x", "-o", tmp_path / "x", log)
+    assert done.returncode == 2
+    assert "both name" in done.stderr
+
+
+def test_what_is_missing_does_not_keep_the_others_from_being_read(tmp_path: Path) -> None:
+    (tmp_path / "a.log").write_text(GOOD)
+    (tmp_path / "b.log").symlink_to(tmp_path / "nowhere")
+    done = call("reach", "--json", tmp_path, tmp_path / "missing.log")
+    assert done.returncode == 3
+    told = json.loads(done.stdout)
+    assert told["rows"][0]["receptions"] == 1
+    assert [Path(file["file"]).name for file in told["inputs"]] == ["a.log"]
+    assert "missing.log: there is no such file" in done.stderr
+    assert "b.log: there is no such file" in done.stderr
+
+
+def test_a_pipe_in_a_folder_is_no_log(tmp_path: Path) -> None:
+    os.mkfifo(tmp_path / "pipe.log")
+    (tmp_path / "a.log").write_text(GOOD)
+    assert json.loads(call("reach", "--json", tmp_path).stdout)["rows"][0]["receptions"] == 1
+
+
+def test_closed_streams_are_borne(tmp_path: Path) -> None:
+    (tmp_path / "a.log").write_text(GOOD)
+    line = " ".join(
+        [*COMMAND, "senders", "--csv", "-o", str(tmp_path / "out.csv"), str(tmp_path / "a.log"), ">&-"]
+    )
+    done = subprocess.run(["sh", "-c", line], stderr=subprocess.PIPE, text=True, cwd=ROOT, timeout=60)
+    assert (done.returncode, done.stderr) == (0, "")
+    assert "Q1ABC" in (tmp_path / "out.csv").read_text()
+    done = subprocess.run(
+        ["sh", "-c", " ".join([*COMMAND, "reach", "-", "<&-"])],
+        stderr=subprocess.PIPE,
+        text=True,
+        cwd=ROOT,
+        timeout=60,
+    )
+    assert done.returncode == 3
+    assert "standard input is closed" in done.stderr
+
+
+def test_a_map_of_refused_files_says_why(tmp_path: Path) -> None:
+    (tmp_path / "a.log").write_text("# logtool layout 2\n" + GOOD)
+    done = call("map", "-o", tmp_path / "map.html", tmp_path / "a.log")
+    assert done.returncode == 3
+    assert "names layout 2" in done.stderr
+    assert not (tmp_path / "map.html").exists()
+
+
+def test_the_order_of_the_options_changes_no_byte(tmp_path: Path) -> None:
+    (tmp_path / "a.log").write_text(GOOD)
+    one = call("reach", "--json", "--band", "40m", "--from", "2026-03-01", tmp_path)
+    other = call("reach", "--from", "2026-03-01", tmp_path, "--band", "40m", "--json")
+    assert one.stdout == other.stdout
+
+
+def test_a_name_that_is_not_utf8_is_written_with_escapes(tmp_path: Path) -> None:
+    (Path(os.fsdecode(os.fsencode(tmp_path) + b"/bad\xff.log"))).write_text(GOOD)
+    for way in ("--json", "--csv"):
+        shown = subprocess.run(
+            [*COMMAND, "lines", way, str(tmp_path)], capture_output=True, cwd=ROOT, timeout=60
+        ).stdout
+        assert "bad\\xff.log" in shown.decode().replace("\\\\", "\\")

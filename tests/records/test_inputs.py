@@ -34,7 +34,11 @@ def test_names_with_odd_characters(dirty: bool, tmp_path: Path) -> None:
         for i, name in enumerate([*ODD_NAMES, UNDECODABLE])
     )
     comparing.write(tmp_path, files)
-    accounts = slow_reader.read_files((str(tmp_path / name), data) for name, data in files)
+    accounts = slow_reader.read_files(
+        # bytes of a name that are not UTF-8 are shown as escapes, so that what is printed is UTF-8
+        (os.fsencode(tmp_path / name).decode("utf-8", "backslashreplace"), data)
+        for name, data in files
+    )
     with open_logs(tmp_path) as logs:
         comparing.compare_opened(logs, accounts)
     with open_logs(*(tmp_path / name for name, _ in reversed(files))) as logs:
