@@ -98,7 +98,7 @@ MEANINGS: dict[str, dict[str, str]] = {
         "shown": "the line, odd bytes as escapes, cut after 200 characters",
     },
     "check findings": {
-        "what": "`before-setup`, `no-setup`, `gap` or `clock-step`",
+        "what": "`before-setup`, `no-setup`, `outside-watch`, `gap` or `clock-step`",
         "from": "beginning",
         "to": "end",
         "receiver": "receiver's name",

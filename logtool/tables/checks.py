@@ -42,7 +42,7 @@ def check_table(logs: Logs, choice: Choice) -> Table:
             "shown": [escaped(shown)[:SHOWN_CHARACTERS] for _, _, _, shown in aside],
         }
     )
-    findings = [*_before_setup(logs), *_gaps(logs, choice), *_steps(logs)]
+    findings = [*_before_setup(logs), *_outside_watch(logs), *_gaps(logs, choice), *_steps(logs)]
     findings = [finding for finding in findings if _is_chosen(finding, choice)]
     findings.sort(key=lambda finding: (finding["from"], finding["receiver"], finding["what"]))
     table.findings = [
@@ -87,6 +87,22 @@ def _before_setup(logs: Logs) -> list[dict[str, Any]]:
             why = f"{count} heard lines and no setup: without --at LOCATOR there are no distances"
         findings.append(_finding(what, receiver, (first_us, last_us), count, "receptions", why))
     return findings
+
+
+def _outside_watch(logs: Logs) -> list[dict[str, Any]]:
+    """Return for each receiver with watch lines what it heard in hours, or pieces of them, without any."""
+    rows = logs.connection.execute("""
+        SELECT r.receiver, sum(n)::BIGINT, min(first_us), max(last_us)
+        FROM rollup r ANTI JOIN listening l
+            ON r.receiver = l.receiver AND r.band = l.band AND r.start_us = l.start_us
+        WHERE r.listening = 'recorded' GROUP BY r.receiver ORDER BY r.receiver""").fetchall()
+    why = (
+        "{} heard lines stand in hours without any watch, so without listening: watch lines are missing there"
+    )
+    return [
+        _finding("outside-watch", receiver, (first_us, last_us), count, "receptions", why.format(count))
+        for receiver, count, first_us, last_us in rows
+    ]
 
 
 def _gaps(logs: Logs, choice: Choice) -> list[dict[str, Any]]:
@@ -157,7 +173,8 @@ def check(logs: Logs, **words: Any) -> pd.DataFrame:
     -------
     pandas.DataFrame
         One row per line with file, line, reason and shown; `attrs["findings"]` is a list of dicts with
-        what (`before-setup`, `no-setup`, `gap`, `clock-step`), from, to, receiver, size, unit and why.
+        what (`before-setup`, `no-setup`, `outside-watch`, `gap`,
+        `clock-step`), from, to, receiver, size, unit and why.
     """
     table = check_table(logs, choose(**words))
     frame = table.to_pandas()
