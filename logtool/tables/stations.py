@@ -27,7 +27,6 @@ class Station:
     antenna: str | None
     place: str | None
     lon_deg: float | None
-    dial_hz: int | None
 
 
 def stations(logs: Logs, receivers: list[str]) -> list[Station]:
@@ -49,13 +48,13 @@ def stations(logs: Logs, receivers: list[str]) -> list[Station]:
     for receiver in sorted(set(receivers) | set(logs.setups)):
         setups = logs.setups.get(receiver)
         if setups:
-            found.append(Station(receiver, BEFORE_ALL_US, receiver, None, None, None, None))
+            found.append(Station(receiver, BEFORE_ALL_US, receiver, None, None, None))
             found += _set_up(receiver, setups)
         else:
             place = written(logs.at) if logs.at else None
             lon_deg = _lon_deg(place) if place else None
             antenna = logs.antenna_name
-            found.append(Station(receiver, BEFORE_ALL_US, receiver, antenna, place, lon_deg, None))
+            found.append(Station(receiver, BEFORE_ALL_US, receiver, antenna, place, lon_deg))
     return found
 
 
@@ -67,9 +66,7 @@ def _set_up(receiver: str, setups: list[Setup]) -> list[Station]:
         place = written(setup.locator)
         first = first_of[place]
         name = f"{receiver}@{first}" if several else receiver
-        found.append(
-            Station(receiver, setup.time_us, name, setup.antenna, place, _lon_deg(first), setup.dial_hz)
-        )
+        found.append(Station(receiver, setup.time_us, name, setup.antenna, place, _lon_deg(first)))
     return found
 
 
