@@ -9,10 +9,9 @@ from typing import TYPE_CHECKING, NamedTuple
 
 from logtool.pages.map_data import MapLine
 from logtool.records.judge import Record, judge
-from logtool.records.layout import COLUMN_NAMES
 from logtool.records.locate import line_numbers
 from logtool.records.sources import STDIN
-from logtool.records.tally import HOUR_US
+from logtool.records.tally import FIELD, HOUR_US, SPLIT
 from logtool.tables.result import written_time
 
 if TYPE_CHECKING:
@@ -22,7 +21,6 @@ STANDARD_INPUT = "standard input"
 Pair = tuple[str, str]  # a receiver and a sender, by name
 _ROLES = ("first", "last", "strongest", "weakest", "located")
 _LOCATED = len(_ROLES)  # the engine counts from 1
-_F = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
 
 
 class _Found(NamedTuple):
@@ -102,12 +100,12 @@ def _best(logs: Logs) -> dict[Pair, set[_Found]]:
     """
     _make_wanted(logs)
     rows = logs.connection.execute(f"""
-        WITH text AS (SELECT file, line, string_split(line, chr(9)) AS f FROM {logs.lines})
+        WITH text AS (SELECT file, line, {SPLIT} AS f FROM {logs.lines})
         SELECT name, w.sender, role, w.time_us, w.file, line
-        FROM text JOIN wanted w ON text.file = w.file AND {_F["receiver"]} = w.receiver
-            AND {_F["sender"]} = w.written AND epoch_us(try_cast({_F["time"]} AS TIMESTAMP)) = w.time_us
-            AND try_cast(nullif({_F["snr_db"]}, '') AS DECIMAL(8, 6)) IS NOT DISTINCT FROM w.snr_db
-        WHERE role <> {_LOCATED} OR upper({_F["locator"]}) = shown
+        FROM text JOIN wanted w ON text.file = w.file AND {FIELD["receiver"]} = w.receiver
+            AND {FIELD["sender"]} = w.written AND epoch_us(try_cast({FIELD["time"]} AS TIMESTAMP)) = w.time_us
+            AND try_cast(nullif({FIELD["snr_db"]}, '') AS DECIMAL(8, 6)) IS NOT DISTINCT FROM w.snr_db
+        WHERE role <> {_LOCATED} OR upper({FIELD["locator"]}) = shown
         ORDER BY name, w.sender, role, CASE WHEN role = {_LOCATED} THEN -w.time_us END, w.file, line
         """).fetchall()
     best: dict[Pair, set[_Found]] = defaultdict(set)

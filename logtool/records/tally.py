@@ -21,12 +21,12 @@ HOUR_US = 3_600_000_000
 OWN_LOCATOR_CHARACTERS = 4  # a sender's locator has at least so many to count as its own place
 BLANK, COMMENT = "blank", "comment"
 
-# The fields of a line that was split at its TABs; the engine counts from 1.
-_F = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
-_FIELDS = f"""epoch_us({_F["time"]}::TIMESTAMP) AS time_us, {_F["receiver"]} AS receiver,
-    {_F["dial_hz"]} AS dial_hz, {_F["mode"]} AS mode, {_F["sender"]} AS sender, {_F["locator"]} AS locator,
-    nullif({_F["snr_db"]}, '')::DECIMAL(8, 6) AS snr_db"""
-_SPLIT = "string_split(line, chr(9))"
+# How the engine splits the column `line` into the list `f` of fields, and where each stands: from 1 on.
+SPLIT = "string_split(line, chr(9))"
+FIELD = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
+_FIELDS = f"""epoch_us({FIELD["time"]}::TIMESTAMP) AS time_us, {FIELD["receiver"]} AS receiver,
+    {FIELD["dial_hz"]} AS dial_hz, {FIELD["mode"]} AS mode, {FIELD["sender"]} AS sender, {FIELD["locator"]} AS locator,
+    nullif({FIELD["snr_db"]}, '')::DECIMAL(8, 6) AS snr_db"""
 # A group of the tally; `start_us` is the start of the hour, or of the piece of it after a cut.
 _KEYS = ("file", "start_us", "receiver", "dial_hz", "mode", "sender")
 _NAMES = ", ".join(_KEYS)
@@ -86,8 +86,8 @@ def create_tally(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cut
     in it.
     """
     source = f"""
-        SELECT file, CASE WHEN NOT quick THEN line END AS odd, {_HASH.format(time="f[1]")} AS hash, f
-        FROM (SELECT *, CASE WHEN quick THEN {_SPLIT} END AS f
+        SELECT file, CASE WHEN NOT quick THEN line END AS odd, {_HASH.format(time=FIELD["time"])} AS hash, f
+        FROM (SELECT *, CASE WHEN quick THEN {SPLIT} END AS f
               FROM (SELECT file, line, {accepts_sql("heard")} AS quick FROM {lines}))"""
     connection.execute(
         f"CREATE OR REPLACE TABLE tally AS SELECT odd, {_NAMES}, {_LISTS}, list(hash) AS hashes"
@@ -153,9 +153,9 @@ def drop_repeated(connection: duckdb.DuckDBPyConnection, lines: str, *, cuts: Cu
         repeats += _drop_copies(connection, lines, cuts)
     connection.execute("ALTER TABLE tally DROP COLUMN hashes")
     connection.execute(f"""
-        CREATE OR REPLACE TABLE odd_heard AS SELECT * FROM odd_records WHERE {_SPLIT}[2] = 'heard'""")
-    connection.execute(f"DELETE FROM odd_records WHERE {_SPLIT}[2] = 'heard'")
-    heard = f"SELECT file, {_SPLIT} AS f FROM odd_heard"
+        CREATE OR REPLACE TABLE odd_heard AS SELECT * FROM odd_records WHERE {SPLIT}[2] = 'heard'""")
+    connection.execute(f"DELETE FROM odd_records WHERE {SPLIT}[2] = 'heard'")
+    heard = f"SELECT file, {SPLIT} AS f FROM odd_heard"
     connection.execute(
         f"INSERT INTO tally BY NAME SELECT {_NAMES}, {_LISTS}"
         f" FROM ({_fields_sql(heard, cuts=cuts)}) GROUP BY {_NAMES}"
@@ -174,7 +174,7 @@ def _may_be_equal(connection: duckdb.DuckDBPyConnection) -> np.ndarray:
 def _drop_copies(connection: duckdb.DuckDBPyConnection, lines: str, cuts: Cuts) -> list[Repeats]:
     """Take what repeated lines added out of their groups; return how many there are."""
     copies = f"""
-        SELECT file, {_SPLIT} AS f, n - (file = min(file) OVER (PARTITION BY line))::INTEGER AS repeated
+        SELECT file, {SPLIT} AS f, n - (file = min(file) OVER (PARTITION BY line))::INTEGER AS repeated
         FROM (SELECT file, line, count(*) AS n FROM {lines}
               WHERE {_HASH.format(time="split_part(line, chr(9), 1)")} IN (SELECT hash FROM candidate)
                   AND {accepts_sql("heard")}

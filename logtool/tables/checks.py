@@ -5,7 +5,9 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 from logtool.records.quick import accepts_sql
+from logtool.records.tally import FIELD, SPLIT
 from logtool.tables.choice import Choice, choose
+from logtool.tables.listening import MINUTE_US
 from logtool.tables.result import Table, output_value
 from logtool.tables.rollup import make_rollup
 
@@ -17,7 +19,6 @@ if TYPE_CHECKING:
 STEP_S = 120  # eight slots of 15 s: decoders may write slots a little out of order; our choice
 SHOWN_CHARACTERS = 200
 _SECOND_US = 1_000_000
-_MINUTE_US = 60 * _SECOND_US
 
 
 def escaped(line: bytes) -> str:
@@ -113,7 +114,7 @@ def _gaps(logs: Logs, choice: Choice) -> list[dict[str, Any]]:
                 PARTITION BY receiver ORDER BY from_us, to_us ROWS BETWEEN UNBOUNDED PRECEDING AND 1 PRECEDING
             ) AS since_us FROM stretch),
         gap AS (
-            SELECT receiver, since_us, from_us FROM after WHERE from_us - since_us > {choice.gap_min * _MINUTE_US})
+            SELECT receiver, since_us, from_us FROM after WHERE from_us - since_us > {choice.gap_min * MINUTE_US})
         SELECT receiver, since_us, from_us,
             receiver IN (SELECT receiver FROM event WHERE kind = 'watch'),
             (SELECT count(*) FROM event WHERE kind = 'stop' AND event.receiver = gap.receiver
@@ -129,7 +130,7 @@ def _gaps(logs: Logs, choice: Choice) -> list[dict[str, Any]]:
             why = (
                 "no record at all; without watch lines it cannot be told whether it was off or heard nothing"
             )
-        size = (from_us - since_us) / _MINUTE_US
+        size = (from_us - since_us) / MINUTE_US
         findings.append(_finding("gap", receiver, (since_us, from_us), size, "min", why))
     return findings
 
@@ -141,9 +142,10 @@ def _steps(logs: Logs) -> list[dict[str, Any]]:
     try:
         rows = connection.execute(f"""
             WITH split AS (
-                SELECT file, string_split(line, chr(9)) AS f FROM {logs.lines} WHERE {accepts_sql("heard")}),
+                SELECT file, {SPLIT} AS f FROM {logs.lines} WHERE {accepts_sql("heard")}),
             read AS (
-                SELECT file, f[3] AS receiver, epoch_us(f[1]::TIMESTAMP) AS time_us, row_number() OVER () AS nth
+                SELECT file, {FIELD["receiver"]} AS receiver, epoch_us({FIELD["time"]}::TIMESTAMP) AS time_us,
+                    row_number() OVER () AS nth
                 FROM split),
             step AS (
                 SELECT *, lag(time_us) OVER (PARTITION BY file, receiver ORDER BY nth) AS before_us FROM read)

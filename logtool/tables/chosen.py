@@ -96,6 +96,16 @@ def same(a: str, b: str, keys: tuple[str, ...]) -> str:
     return " AND ".join(f"{a}.{key} IS NOT DISTINCT FROM {b}.{key}" for key in keys)
 
 
+def further_keys(choice: Choice, keys: tuple[str, ...]) -> tuple[str, ...]:
+    """Return the keys of `--by` that a table with these keys does not have anyway."""
+    return tuple(key for key in choice.by if key not in keys)
+
+
+def in_order(keys: tuple[str, ...]) -> str:
+    """Return the SQL order of rows by their keys, nulls first."""
+    return ", ".join(f"{key} NULLS FIRST" for key in keys)
+
+
 def make_senders(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> None:
     """Make the table `per_sender`: one row for each sender in each row of a table with the keys.
 

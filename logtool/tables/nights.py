@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 
 from logtool.places.nights import night_bounds
 from logtool.tables.choice import Choice, choose
-from logtool.tables.chosen import make_chosen, same
+from logtool.tables.chosen import further_keys, in_order, make_chosen, same
 from logtool.tables.reach import SHARE_MIN, make_rows
 from logtool.tables.result import Table
 
@@ -23,7 +23,7 @@ _EPOCH_DAY = date(1970, 1, 1).toordinal()
 def nights_table(logs: Logs, choice: Choice) -> Table:
     """Return the columns of `nights`; see `nights`."""
     connection, notes = make_chosen(logs, choice)
-    by = tuple(key for key in choice.by if key not in KEYS)
+    by = further_keys(choice, KEYS)
     keys = (*KEYS, *by)
     make_rows(connection, ("hour", *keys))
     timed_keys = tuple(key for key in keys if key != "mode")
@@ -35,7 +35,7 @@ def nights_table(logs: Logs, choice: Choice) -> Table:
         CREATE OR REPLACE TEMP TABLE thinned AS
         SELECT {", ".join(keys)}, sum(senders_in_30) AS senders_in_30 FROM row GROUP BY ALL""")
     make_rows(connection, keys)
-    order = ", ".join(f"row.{key} NULLS FIRST" for key in keys)
+    order = in_order(tuple(f"row.{key}" for key in keys))
     table = Table.of(
         connection.execute(f"""
             SELECT {", ".join(f"row.{key}" for key in keys)}, row.lon_deg AS "from", row.lon_deg AS "to", listening_min,

@@ -10,7 +10,8 @@ from logtool.places.locator import centres
 from logtool.places.sun import zenith_deg
 from logtool.records.tally import HOUR_US
 from logtool.tables.choice import Choice, choose
-from logtool.tables.chosen import make_chosen, make_senders, same
+from logtool.tables.chosen import further_keys, in_order, make_chosen, make_senders, same
+from logtool.tables.listening import MINUTE_US
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -24,7 +25,6 @@ SHARE_MIN = 30.0  # receptions are thinned to so many minutes of listening; desi
 P90_SENDERS = 5  # the 90th percentile needs so many located senders; design, section 4
 MIXED = "mixed"  # listening is recorded for a part of the row, assumed for the other
 HALF_HOUR_S = 1800.0
-_MINUTE_US = 60_000_000
 # What the summary says where nothing is counted.
 _NOTHING = dict.fromkeys(
     ("listening_min", "receptions", "unnamed", "senders", "heard_once", "located", "squares"), 0
@@ -80,7 +80,7 @@ def make_rows(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> N
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE counted AS
         WITH minutes AS (
-            SELECT {timed}, sum(to_us - from_us) / {_MINUTE_US} AS listening_min, min(listening) AS first_way,
+            SELECT {timed}, sum(to_us - from_us) / {MINUTE_US} AS listening_min, min(listening) AS first_way,
                 max(listening) AS last_way, arg_max(place, (to_us, place)) AS listened_at,
                 any_value(lon_deg) AS lon_deg
             FROM listened GROUP BY {timed}),
@@ -113,10 +113,10 @@ def make_rows(connection: duckdb.DuckDBPyConnection, keys: tuple[str, ...]) -> N
 def reach_table(logs: Logs, choice: Choice) -> Table:
     """Return the columns of `reach`, with its summary; see `reach`."""
     connection, notes = make_chosen(logs, choice)
-    by = tuple(key for key in choice.by if key not in KEYS)
+    by = further_keys(choice, KEYS)
     keys = (*KEYS, *by)
     make_rows(connection, keys)
-    order = ", ".join(f"{key} NULLS FIRST" for key in keys)
+    order = in_order(keys)
     table = Table.of(
         connection.execute(f"""
             SELECT hour * {HOUR_US} AS hour, {", ".join((*KEYS[1:], *by))}, {", ".join(COLUMNS)},

@@ -4,9 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from logtool.records.layout import COLUMN_NAMES
 from logtool.records.quick import accepts_sql
-from logtool.records.tally import HOUR_US
+from logtool.records.tally import FIELD, HOUR_US, SPLIT
 from logtool.tables.choice import Choice
 from logtool.tables.chosen import conditions
 from logtool.tables.rollup import make_rollup
@@ -29,7 +28,6 @@ def receptions_sql(logs: Logs, choice: Choice) -> str:
         Which receptions.
     """
     make_rollup(logs, choice)
-    field = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
     lines = f"""
         SELECT file, line FROM {logs.lines} WHERE {accepts_sql("heard")}
         UNION ALL FROM odd_heard"""
@@ -37,11 +35,11 @@ def receptions_sql(logs: Logs, choice: Choice) -> str:
         lines = f"SELECT min(file) AS file, line FROM ({lines}) GROUP BY line"
     where = " AND ".join(conditions(choice, of_receptions=True))
     return f"""(
-        WITH split AS (SELECT file, line AS raw, string_split(line, chr(9)) AS f FROM ({lines})),
+        WITH split AS (SELECT file, line AS raw, {SPLIT} AS f FROM ({lines})),
         fields AS (
-            SELECT file, raw, f, epoch_us({field["time"]}::TIMESTAMP) AS time_us, {field["receiver"]} AS receiver,
-                {field["dial_hz"]} AS dial_hz, {field["mode"]} AS mode, upper({field["sender"]}) AS sender,
-                upper({field["addressee"]}) AS addressee, {field["text"]} AS text
+            SELECT file, raw, f, epoch_us({FIELD["time"]}::TIMESTAMP) AS time_us, {FIELD["receiver"]} AS receiver,
+                {FIELD["dial_hz"]} AS dial_hz, {FIELD["mode"]} AS mode, upper({FIELD["sender"]}) AS sender,
+                upper({FIELD["addressee"]}) AS addressee, {FIELD["text"]} AS text
             FROM split),
         placed AS (
             SELECT file, raw, time_us, name AS receiver, antenna, place, band, spot.hour, spot.start_us, night,

@@ -13,8 +13,7 @@ import numpy as np
 from logtool.places.bands import band_name
 from logtool.places.nights import night_of_hours
 from logtool.records.engine import create_table
-from logtool.records.layout import COLUMN_NAMES
-from logtool.records.tally import HOUR_US
+from logtool.records.tally import FIELD, HOUR_US, SPLIT
 from logtool.tables.choice import Choice
 from logtool.tables.listening import make_listening, make_stretches
 from logtool.tables.locators import make_own_hours, make_sender_hours
@@ -66,16 +65,15 @@ def make_rollup(logs: Logs, choice: Choice) -> duckdb.DuckDBPyConnection:
 def _make_events(logs: Logs) -> None:
     """Make the table `event` of all records but receptions; of setups, those in force."""
     connection = logs.connection
-    field = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
     connection.execute(f"""
         CREATE OR REPLACE TEMP TABLE event AS
-        SELECT {field["kind"]} AS kind, {field["receiver"]} AS receiver,
-            epoch_us({field["time"]}::TIMESTAMP) AS time_us,
-            nullif({field["dial_hz"]}, '') AS dial_hz,
-            (nullif(regexp_extract({field["more"]}, '(?:^|; )on_s=([^;]+)', 1), '')::DECIMAL(12, 6)
+        SELECT {FIELD["kind"]} AS kind, {FIELD["receiver"]} AS receiver,
+            epoch_us({FIELD["time"]}::TIMESTAMP) AS time_us,
+            nullif({FIELD["dial_hz"]}, '') AS dial_hz,
+            (nullif(regexp_extract({FIELD["more"]}, '(?:^|; )on_s=([^;]+)', 1), '')::DECIMAL(12, 6)
                 * {_SECOND_US})::BIGINT AS on_us
-        FROM (SELECT string_split(line, chr(9)) AS f FROM odd_records)
-        WHERE f[2] <> 'setup'""")
+        FROM (SELECT {SPLIT} AS f FROM odd_records)
+        WHERE {FIELD["kind"]} <> 'setup'""")
     held = [setup for setups in logs.setups.values() for setup in setups]
     columns = {"receiver": "VARCHAR", "time_us": "BIGINT", "dial_hz": "VARCHAR"}
     values = [[str(getattr(setup, name)) for setup in held] for name in columns]

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 from logtool.tables.choice import Choice, choose
-from logtool.tables.chosen import make_chosen, make_senders, same
+from logtool.tables.chosen import further_keys, in_order, make_chosen, make_senders, same
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -23,11 +23,11 @@ SECTOR_DEG = (
 def sectors_table(logs: Logs, choice: Choice) -> Table:
     """Return the columns of `sectors`; see `sectors`."""
     connection, notes = make_chosen(logs, choice)
-    by = tuple(key for key in choice.by if key not in KEYS)
+    by = further_keys(choice, KEYS)
     keys = (*KEYS, *by)
     listed = ", ".join(keys)
     make_senders(connection, keys)
-    order = ", ".join(f"{key} NULLS FIRST" for key in (*KEYS, "sector_deg", *by))
+    order = in_order((*KEYS, "sector_deg", *by))
     table = Table.of(
         connection.execute(f"""
             WITH placed AS (

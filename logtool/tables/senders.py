@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 from logtool.places.locator import written
 from logtool.tables.choice import Choice, choose
-from logtool.tables.chosen import make_chosen, make_senders
+from logtool.tables.chosen import further_keys, in_order, make_chosen, make_senders
 from logtool.tables.result import Table
 
 if TYPE_CHECKING:
@@ -20,9 +20,8 @@ KEYS = ("receiver", "band")
 def senders_table(logs: Logs, choice: Choice) -> Table:
     """Return the columns of `senders`; see `senders`."""
     connection, notes = make_chosen(logs, choice)
-    by = tuple(key for key in choice.by if key not in KEYS)
+    by = further_keys(choice, KEYS)
     make_senders(connection, (*KEYS, *by))
-    order = ", ".join(f"{key} NULLS FIRST" for key in by)
     table = Table.of(
         connection.execute(f"""
             SELECT {", ".join((*KEYS, "sender", *by))}, locator, borrowed, distance_km, uncertainty_km, bearing_deg,
@@ -30,7 +29,7 @@ def senders_table(logs: Logs, choice: Choice) -> Table:
                 CASE WHEN first_mode = last_mode THEN snr_median_db END AS snr_median_db,
                 CASE WHEN first_mode = last_mode THEN snr_best_db END AS snr_best_db
             FROM per_sender
-            ORDER BY receiver NULLS FIRST, band NULLS FIRST, n DESC, sender{", " + order if order else ""}""")
+            ORDER BY {", ".join([in_order(KEYS), "n DESC", "sender", *filter(None, [in_order(by)])])}""")
     )
     table.columns["locator"] = [own and written(own) for own in table.columns["locator"]]
     table.notes = notes
