@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from logtool.tables.lines import lines
     from logtool.tables.nights import nights
     from logtool.tables.reach import reach
+    from logtool.tables.records import receptions
     from logtool.tables.sectors import sectors
     from logtool.tables.senders import senders
 
@@ -31,11 +32,12 @@ __all__ = [
     "nights",
     "open_logs",
     "reach",
+    "receptions",
     "sectors",
     "senders",
 ]
 
-_ROOMS = {"open_logs": "records.opening", "check": "tables.checks"}
+_ROOMS = {"open_logs": "records.opening", "check": "tables.checks", "receptions": "tables.records"}
 
 
 def __getattr__(name: str) -> Any:

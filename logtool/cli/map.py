@@ -18,6 +18,7 @@ _NOT_TOLD = ("out", "set_aside", "quiet", "title")  # paths of the maker's machi
 @click.command("map")
 @options.logs
 @options.choice
+@options.privacy
 @click.option(
     "-o",
     "--out",

@@ -7,6 +7,8 @@ from typing import Any
 
 import click
 
+from logtool.records.privacy import COARSE_CHARACTERS
+
 Command = Callable[..., Any]
 
 
@@ -25,6 +27,8 @@ def _several(name: str, metavar: str, help_text: str) -> Callable[[Command], Com
 
 logs = _together(
     click.argument("paths", nargs=-1, required=True, metavar="LOGS..."),
+    click.option("--recipe", metavar="FILE", help="Read files that do not follow the layout by this recipe."),
+    click.option("--date", metavar="DATE", help="Date at which they begin, where they name none."),
     click.option("--at", metavar="LOCATOR", help="Place of receivers that have no setup line."),
     click.option("--antenna-name", metavar="NAME", help="Antenna of receivers that have no setup line."),
     click.option("--anyway", is_flag=True, help="Read on in a file whose first 10 000 lines hold no record."),
@@ -52,6 +56,21 @@ choice = _together(
     _several("--mode", "MODE", "Count only this mode."),
     _several("--night", "DATE", "Count only the night that begins on this date."),
     _several("--sender", "CALL", "Count only this sender."),
+)
+privacy = _together(
+    click.option(
+        "--coarsen",
+        type=click.Choice(COARSE_CHARACTERS),
+        metavar="4|6|8",
+        help="Cut all locators to so many characters, before anything is worked out from them.",
+    ),
+    click.option("--without-text", is_flag=True, help="Leave out the messages."),
+    click.option("--hide-senders", is_flag=True, help="Give senders other names, by a secret key."),
+    click.option(
+        "--key",
+        metavar="FILE",
+        help="The secret key for --hide-senders; it is made if there is none. By default it is kept for you.",
+    ),
 )
 by = _several("--by", "KEY", "Split the rows also by antenna, band, mode, night or receiver.")
 output = _together(

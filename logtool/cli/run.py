@@ -58,12 +58,21 @@ def opened(words: dict[str, Any], *, with_digest: bool) -> Iterator[Logs]:
     """Open the logs of a call, with progress on a terminal; write what was set aside if it is wanted."""
     from logtool.cli.memory import keep_freed_memory
     from logtool.cli.progress import ProgressBar
-    from logtool.records.opening import open_with
+    from logtool.records.opening import day_us_of, open_with, recipe_for
     from logtool.records.reader import OpenOptions
 
     keep_freed_memory()
+    recipe = recipe_for(words["recipe"])
+    day_us = day_us_of(words["date"], with_recipe=recipe)
     with ProgressBar(quiet=words["quiet"]) as bar:
-        options = OpenOptions(with_digest=with_digest, anyway=words["anyway"], others_too=True, progress=bar)
+        options = OpenOptions(
+            with_digest=with_digest,
+            anyway=words["anyway"],
+            others_too=True,
+            progress=bar,
+            recipe=recipe,
+            day_us=day_us,
+        )
         with open_with(words["paths"], words["at"], words["antenna_name"], options) as logs:
             _spare_inputs(logs, words)
             yield logs

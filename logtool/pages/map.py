@@ -21,6 +21,7 @@ from logtool.pages.map_data import (
 from logtool.pages.map_lines import lines_behind, short_names
 from logtool.pages.map_notes import figure_notes, file_notes, ledger_lines
 from logtool.pages.map_page import map_html
+from logtool.pages.map_privacy import privacy_notes, private_choice, private_options
 from logtool.places.locator import written
 from logtool.places.nights import HALF_PAST_S
 from logtool.places.sun import subsolar_point
@@ -73,7 +74,7 @@ def map_data_of(
     title : str, optional
         Heading of the page; by default made of the receivers and dates.
     options : pairs of name and value
-        Told on the page as they are.
+        Told on the page as they are, unless `logs.privacy` leaves them out.
 
     Raises
     ------
@@ -82,16 +83,19 @@ def map_data_of(
     NoRecordsError
         The inputs hold no record, so there is no receiver.
     """
+    privacy = logs.privacy  # with it no file is named, and no line, which says nothing without its file
+    choice = private_choice(choice, privacy)
     connection, notes = make_chosen(logs, choice)
     receivers, unplaced = _receivers(connection, choice)
     names = [receiver.name for receiver in receivers]
     notes += _left_out(connection, unplaced)
-    files = short_names(logs.file_names)
+    files = [] if privacy else short_names(logs.file_names)
     hours = _hours(connection, receivers)
-    senders, pairs = _senders_and_pairs(logs, names)
+    index_of, senders = _senders(logs)
+    pairs = _pairs(logs, names, index_of, senders)
     groups, totals, counts = _counted(
         connection,
-        [sender.name for sender in senders],
+        index_of,
         names,
         [hour.start_unix_s // HOUR_S for hour in hours],
     )
@@ -105,9 +109,14 @@ def map_data_of(
         counts=counts,
         totals=totals,
         files=tuple(files),
-        notes=(*notes, *file_notes(logs, files), *figure_notes(connection, receivers, choice.gap_min)),
+        notes=(
+            *privacy_notes(privacy),
+            *notes,
+            *file_notes(logs, files),
+            *figure_notes(connection, receivers, choice.gap_min),
+        ),
         ledger=ledger_lines(logs, files),
-        options=tuple((name, value) for name, value in options),
+        options=private_options(options, privacy),
     )
 
 
@@ -200,18 +209,27 @@ def _hours(connection: duckdb.DuckDBPyConnection, receivers: list[MapReceiver]) 
     ]
 
 
-def _senders_and_pairs(logs: Logs, receivers: list[str]) -> tuple[list[MapSender], list[MapPair]]:
+def _senders(logs: Logs) -> tuple[dict[str, int], list[MapSender]]:
+    """Return each sender's index by its name in the logs, and the senders in the order of the names shown."""
+    make_senders(logs.connection, ("whole",))
+    found = logs.connection.execute("SELECT sender, locator, borrowed FROM per_sender").fetchall()
+    shown = sorted((logs.privacy.call(name), name, own, borrowed) for name, own, borrowed in found)
+    return (
+        {name: i for i, (_, name, _, _) in enumerate(shown)},
+        [MapSender(shown_name, own and written(own), borrowed) for shown_name, _, own, borrowed in shown],
+    )
+
+
+def _pairs(
+    logs: Logs, receivers: list[str], index_of: dict[str, int], senders: list[MapSender]
+) -> list[MapPair]:
     connection = logs.connection
-    make_senders(connection, ("whole",))
-    found = connection.execute("SELECT sender, locator, borrowed FROM per_sender ORDER BY sender").fetchall()
-    senders = [MapSender(name, own and written(own), borrowed) for name, own, borrowed in found]
-    index_of = {sender.name: i for i, sender in enumerate(senders)}
     make_senders(connection, ("receiver",))
-    lines = lines_behind(logs)
+    lines = {} if logs.privacy else lines_behind(logs)
     table = Table.of(
         connection.execute("""
             SELECT sender, receiver, locator, distance_km, uncertainty_km, bearing_deg, first_us AS first,
-                last_us AS last, again FROM per_sender ORDER BY sender, receiver""")
+                last_us AS last, again FROM per_sender""")
     )
     pairs = []
     for row in table.rows():
@@ -230,14 +248,13 @@ def _senders_and_pairs(logs: Logs, receivers: list[str]) -> tuple[list[MapSender
                 locator=None if own == senders[index].locator else own,
             )
         )
-    return senders, pairs
+    return sorted(pairs, key=lambda pair: (pair.sender, pair.receiver))
 
 
 def _counted(
-    connection: duckdb.DuckDBPyConnection, senders: list[str], receivers: list[str], hours: list[int]
+    connection: duckdb.DuckDBPyConnection, sender_at: dict[str, int], receivers: list[str], hours: list[int]
 ) -> tuple[tuple[MapGroup, ...], MapTotals, MapCounts]:
     """Return the groups, and the receptions of each sender in each of them, over all hours and in each."""
-    sender_at = {name: i for i, name in enumerate(senders)}
     hour_at = {hour: i for i, hour in enumerate(hours)}
     listed = ", ".join(GROUP_KEYS)
     make_senders(connection, GROUP_KEYS)

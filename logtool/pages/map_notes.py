@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 
 
 def ledger_lines(logs: Logs, files: list[str]) -> tuple[str, ...]:
-    """Return a line for each file that says what became of its lines.
+    """Return a line for each file that says what became of its lines; where files are left out, one for all.
 
     Parameters
     ----------
@@ -24,7 +24,18 @@ def ledger_lines(logs: Logs, files: list[str]) -> tuple[str, ...]:
     files : list of str
         The names to show, in the order of the files.
     """
+    if logs.privacy:
+        return (f"{_many(len(logs.inputs), 'file')}: {_account(_together(logs.inputs))}",)
     return tuple(f"{name}: {_account(file)}" for name, file in zip(files, logs.inputs, strict=True))
+
+
+def _together(ledgers: list[FileLedger]) -> FileLedger:
+    whole = FileLedger("", None, 0, 0)
+    for file in ledgers:
+        for name in ("bytes", "lines", "blank", "comments", "records", "repeated"):
+            setattr(whole, name, getattr(whole, name) + getattr(file, name))
+        whole.reasons.update(file.reasons)
+    return whole
 
 
 def _account(file: FileLedger) -> str:
@@ -41,6 +52,8 @@ def _account(file: FileLedger) -> str:
 def file_notes(logs: Logs, files: list[str]) -> list[str]:
     """Return the notes on the reading, and why files were not read, without the folders of any.
 
+    Where files are left out, only how many notes there are, since each names one.
+
     Parameters
     ----------
     logs : Logs
@@ -48,6 +61,9 @@ def file_notes(logs: Logs, files: list[str]) -> list[str]:
     files : list of str
         The names to show, in the order of the files.
     """
+    if logs.privacy:
+        notes = [f"{_many(len(logs.notes), 'note')} on the reading left out"] if logs.notes else []
+        return notes + ([f"{_many(len(logs.refused), 'input')} not read"] if logs.refused else [])
     shown = dict(zip(logs.file_names, files, strict=True))
     notes = [_without_folder(note, shown) for note in logs.notes]
     return notes + [f"not read: {_without_folder(refusal, shown)}" for refusal in logs.refused]

@@ -20,6 +20,7 @@ class FileLedger:
     records: int = 0
     repeated: int = 0
     reasons: Counter[str] = field(default_factory=Counter)
+    rules: dict[str, int] | None = None  # lines by the rule of a recipe; with the blank ones they are all
 
     @property
     def set_aside(self) -> int:
@@ -28,7 +29,7 @@ class FileLedger:
 
     def as_dict(self) -> dict[str, Any]:
         """Return the ledger with the keys of `--json`, reasons by name."""
-        return {
+        told = {
             "file": self.file,
             "digest": self.digest,
             "bytes": self.bytes,
@@ -40,3 +41,4 @@ class FileLedger:
             "set_aside": self.set_aside,
             "reasons": dict(sorted(self.reasons.items())),
         }
+        return told if self.rules is None else told | {"rules": dict(sorted(self.rules.items()))}

@@ -4,14 +4,21 @@ from __future__ import annotations
 
 import os
 import re
+from typing import TYPE_CHECKING
 
 from logtool.errors import PlaceError, UsageError
+from logtool.records.judge import time_of
 from logtool.records.layout import LOCATOR_FORM, NAME_FORM, SETUP_LOCATOR_CHARACTERS
 from logtool.records.reader import Logs, OpenOptions
+
+if TYPE_CHECKING:
+    from logtool.records.recipes.recipe import Recipe
 
 
 def open_logs(
     *paths: str | os.PathLike[str],
+    recipe: str | os.PathLike[str] | Recipe | None = None,
+    date: str | None = None,
     at: str | None = None,
     antenna_name: str | None = None,
     threads: int | None = None,
@@ -26,6 +33,10 @@ def open_logs(
     ----------
     *paths : str or path
         Files (plain, `.gz`, `.zst`), folders, or `-` for standard input.
+    recipe : str, path or Recipe, optional
+        How files that do not follow the layout are read: a recipe's file, or one that was loaded.
+    date : str, optional
+        Date (`YYYY-MM-DD`) at which such files begin, where neither they nor their names give one.
     at : str, optional
         Locator of 4 or more characters that stands in for receivers without a setup.
     antenna_name : str, optional
@@ -45,7 +56,7 @@ def open_logs(
     FileError
         Where a file cannot be read.
     UsageError
-        Where no path is given, or `at` or `antenna_name` cannot be used.
+        Where no path is given, or `recipe`, `date`, `at` or `antenna_name` cannot be used.
 
     Examples
     --------
@@ -59,7 +70,33 @@ def open_logs(
     ...     logs.inputs[0].records
     1
     """
-    return open_with(paths, at, antenna_name, OpenOptions(threads, memory_mb, anyway=anyway))
+    options = OpenOptions(
+        threads, memory_mb, anyway=anyway, recipe=recipe_for(recipe), day_us=day_us_of(date, with_recipe=recipe)
+    )
+    return open_with(paths, at, antenna_name, options)
+
+
+def recipe_for(recipe: str | os.PathLike[str] | Recipe | None) -> Recipe | None:
+    """Return the recipe that is meant, loaded where it is a file."""
+    from logtool.records.recipes.recipe import Recipe
+
+    if recipe is None or isinstance(recipe, Recipe):
+        return recipe
+    from logtool.records.recipes.loading import load_recipe
+
+    return load_recipe(recipe)
+
+
+def day_us_of(date: str | None, *, with_recipe: object) -> int | None:
+    """Return the date at which files begin as midnight in microseconds since 1970."""
+    if date is None:
+        return None
+    if with_recipe is None:
+        raise UsageError("--date is for texts that a recipe reads; give --recipe FILE")
+    midnight_us = time_of(f"{date}T00:00:00Z")
+    if midnight_us is None:
+        raise UsageError(f"--date {date!r} is no date; write it like 2026-03-01")
+    return midnight_us
 
 
 def open_with(

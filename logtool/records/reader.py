@@ -14,15 +14,18 @@ from typing import TYPE_CHECKING
 
 from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
+from logtool.records.privacy import Privacy
+from logtool.records.marks import MARK
 from logtool.records.progress import LOOK_SHARE, Polled, Progress
-from logtool.records.scan import EndlessLineError, Scan, ScanOptions, scan
-from logtool.records.sources import UnreadableError, sources_of
+from logtool.records.scan import LEAST_MEMORY_MB, EndlessLineError, Scan, ScanOptions, scan
+from logtool.records.sources import STDIN, Source, UnreadableError, sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
 
 if TYPE_CHECKING:
     import duckdb
 
-LEAST_MEMORY_MB = 880  # ten million lines then stay under 1 GB and are not spilled, measured
+    from logtool.records.recipes.recipe import Recipe
+
 MEMORY_SHARE = 0.8  # of the text's size, above that
 
 
@@ -39,7 +42,7 @@ class Setup:
 
 @dataclass(frozen=True)
 class OpenOptions:
-    """How logs are opened beside their places: threads, memory, digests, strangers, the others, progress."""
+    """How logs are opened beside their places: threads, memory, digests, strangers, and so on."""
 
     threads: int | None = None
     memory_mb: int | None = None
@@ -49,6 +52,9 @@ class OpenOptions:
         False  # read the other files where one is missing or unreadable, and name it in `refused`
     )
     progress: Progress | None = None
+    privacy: Privacy = Privacy()
+    recipe: Recipe | None = None  # how files that do not follow the layout are read
+    day_us: int | None = None  # the date at which such files begin, where they name none
 
 
 class Logs:
@@ -120,6 +126,11 @@ class Logs:
         return max(LEAST_MEMORY_MB, round(MEMORY_SHARE * text_bytes / 1e6))
 
     @property
+    def privacy(self) -> Privacy:
+        """What is left out or made coarse; locators are cut before anything is learned from them."""
+        return self._options.privacy
+
+    @property
     def lines(self) -> str:
         """SQL of the relation of `file` and `line` over all files, empty lines left out."""
         return lines_sql(self.paths)
@@ -175,7 +186,7 @@ class Logs:
         wanted: dict[int, dict[bytes, str]] = defaultdict(dict)
         for odd in self._odd:
             if odd.why not in (BLANK, COMMENT):
-                wanted[odd.file][odd.line.encode()] = odd.why
+                wanted[odd.file][odd.line.encode()] = self._why(odd)
         found = [
             (i, number, reason, line)
             for i, scan in enumerate(self._scans)
@@ -183,9 +194,36 @@ class Logs:
         ]
         paths = self.paths
         for i, reasons in wanted.items():
-            found += [(i, n, reasons[line], line) for n, line in line_numbers(paths[i], reasons)]
+            numbered = list(line_numbers(paths[i], reasons))
+            as_given = self._as_given(i, {n for n, _ in numbered})
+            found += [(i, n, reasons[line], as_given.get(n, line)) for n, line in numbered]
         names = self.file_names
         return [(names[i], n, reason, line) for i, n, reason, line in sorted(found)]
+
+    def _why(self, odd: Odd) -> str:
+        """Return why a line is no record: by the recipe, where one says so, else by the judge."""
+        if self._scans[odd.file].rules is not None and odd.line.startswith(MARK):
+            return odd.line.removeprefix(MARK)
+        return odd.why
+
+    def _as_given(self, file: int, numbers: set[int]) -> dict[int, bytes]:
+        """Return lines by their numbers as they stand in a file that was read by a recipe."""
+        seen = self._scans[file]
+        if seen.rules is None or self._options.recipe is None:
+            return {}
+        from logtool.records.recipes.reading import source_lines
+
+        return source_lines(self._options.recipe, seen.source, numbers)
+
+    def _scan(self, source: Source, path: Path, options: ScanOptions) -> Scan:
+        """Look over a file: by the recipe where there is one and the file does not follow the layout."""
+        recipe = self._options.recipe
+        if recipe is not None:
+            from logtool.records.recipes.reading import in_layout, scan_by
+
+            if source.name == STDIN or not in_layout(source):
+                return scan_by(recipe, source, path, options, day_us=self._options.day_us)
+        return scan(source, path, options)
 
     def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:
         unread: list[str] = []
@@ -196,12 +234,12 @@ class Logs:
         def told(file_bytes: int) -> None:
             self._tell("looking over the files", LOOK_SHARE * min(1, (done + file_bytes) / whole))
 
-        options = ScanOptions(self._options.with_digest, self._options.anyway, told)
+        options = ScanOptions(self._options.with_digest, self._options.anyway, told, self._options.threads)
         scans: list[Scan] = []
         for source, size in zip(sources, sizes, strict=True):
             path = self._path_of(len(scans))
             try:
-                seen = scan(source, path, options)
+                seen = self._scan(source, path, options)
                 refused = seen.refused and f"{source.name}: {seen.refused}"
             except EndlessLineError as error:
                 refused = str(error)
@@ -215,6 +253,7 @@ class Logs:
                 self.refused.append(refused)
                 path.unlink(missing_ok=True)
                 continue
+            self.notes += [f"{source.name}: {note}" for note in seen.notes]
             if seen.broken:
                 self.notes.append(f"{source.name}: read up to a break: {seen.broken}")
             scans.append(seen)
@@ -255,7 +294,7 @@ class Logs:
             raise failure
 
     def _make_tally(self, bounds: frozenset[int]) -> None:
-        cuts = Cuts(self._make_cuts(), tuple(sorted(bounds)))
+        cuts = Cuts(self._make_cuts(), tuple(sorted(bounds)), self.privacy.coarsen)
         lines = self.lines  # once: a file that changes from here on is read anew as a whole
         with Polled(self.connection, self._options.progress):
             self._odd = create_tally(self.connection, lines, cuts=cuts)
@@ -281,7 +320,7 @@ class Logs:
     def _count(self, repeats: list[Repeats]) -> list[FileLedger]:
         ledger = []
         for seen in self._scans:
-            file = FileLedger(seen.source.name, seen.digest, seen.stored_bytes, seen.lines)
+            file = FileLedger(seen.source.name, seen.digest, seen.stored_bytes, seen.lines, rules=seen.rules)
             file.blank, file.comments = seen.blank, seen.comments
             file.reasons.update(reason for _, reason, _ in seen.set_aside)
             ledger.append(file)
@@ -297,7 +336,7 @@ class Logs:
             if odd.why == COMMENT:
                 ledger[odd.file].comments += odd.copies
             elif odd.why != BLANK:
-                ledger[odd.file].reasons[odd.why] += odd.copies
+                ledger[odd.file].reasons[self._why(odd)] += odd.copies
         for file in ledger:
             file.blank = file.lines - file.comments - file.records - file.repeated - file.set_aside
         return ledger

@@ -10,7 +10,7 @@ from __future__ import annotations
 import hashlib
 import re
 from collections import Counter, deque
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from concurrent.futures import Future, ThreadPoolExecutor
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -26,6 +26,7 @@ from logtool.records.sources import Source, Text
 BOM = b"\xef\xbb\xbf"
 ENGINE_DELIMITER = "\x01"  # a byte that no record can hold
 STRANGER_LINES = 10_000  # a file with so many lines and no record is something else altogether
+LEAST_MEMORY_MB = 880  # ten million lines then stay under 1 GB and are not spilled, measured
 LONGEST_LINE_BYTES = 64 << 20  # held in memory at most; our choice
 _WINDOW_BYTES = MAX_LINE_BYTES // 2  # a line over the limit covers at least one whole window with no LF
 _SHOWN_CHARACTERS = 60
@@ -55,6 +56,8 @@ class Scan:
     comments: int = 0
     set_aside: list[tuple[int, str, bytes]] = field(default_factory=list)  # line number, reason, line
     setups: list[tuple[int, Record]] = field(default_factory=list)  # line number and record, as read
+    rules: dict[str, int] | None = None  # lines by the rule of a recipe, where the file was read by one
+    notes: list[str] = field(default_factory=list)
 
 
 @dataclass(frozen=True)
@@ -64,6 +67,8 @@ class ScanOptions:
     with_digest: bool = False
     anyway: bool = False
     progress: Callable[[int], None] | None = None
+    threads: int | None = None  # of the engine, where a recipe needs it
+    memory_mb: int = LEAST_MEMORY_MB
 
 
 def scan(source: Source, path: Path, options: ScanOptions, *, only_bytes: int | None = None) -> Scan:
@@ -108,7 +113,7 @@ def _look(found: Scan, text: Text, options: ScanOptions, copy: IO[bytes] | None)
     """Fill `found`; None where the file has to be copied and `copy` is not there."""
     text.digest = hashlib.sha256() if options.with_digest else None
     stranger = None if options.anyway else _Stranger()
-    for block, facts in _with_facts(_whole_lines(text)):
+    for block, facts in _with_facts(whole_lines(text, text.source.name)):
         if found.lines == 0:
             found.refused = _higher_layout(block)
         if stranger is not None and not found.refused:
@@ -120,7 +125,7 @@ def _look(found: Scan, text: Text, options: ScanOptions, copy: IO[bytes] | None)
                 return None
             block = _taken_out(found, block)
         if facts.may_set_up:
-            _note_setups(found, block)
+            note_setups(found, block)
         if copy is not None:
             copy.write(block)
         found.lines += facts.lines
@@ -164,7 +169,7 @@ def _with_facts(blocks: Iterator[bytes]) -> Iterator[tuple[bytes, _Facts]]:
             yield first, facts.result()
 
 
-def _without_bom(text: Text) -> Iterator[bytes]:
+def _without_bom(text: Iterable[bytes]) -> Iterator[bytes]:
     blocks = iter(text)
     start = b""
     while len(start) < len(BOM) and (block := next(blocks, b"")):
@@ -174,8 +179,14 @@ def _without_bom(text: Text) -> Iterator[bytes]:
     yield from blocks
 
 
-def _whole_lines(text: Text) -> Iterator[bytes]:
-    """Give the text, without a BOM at its start, in blocks that end where a line ends."""
+def whole_lines(text: Iterable[bytes], name: str) -> Iterator[bytes]:
+    """Give a text, without a BOM at its start, in blocks that end where a line ends.
+
+    Raises
+    ------
+    EndlessLineError
+        Where a line is too long to be held; `name` stands for the file.
+    """
     kept: list[bytes] = []
     kept_bytes = 0
     for block in _without_bom(text):
@@ -188,7 +199,7 @@ def _whole_lines(text: Text) -> Iterator[bytes]:
             kept_bytes += len(block) - cut
         if kept_bytes > LONGEST_LINE_BYTES:
             raise EndlessLineError(
-                f"{text.source.name}: it has a line of over {LONGEST_LINE_BYTES >> 20} MB, "
+                f"{name}: it has a line of over {LONGEST_LINE_BYTES >> 20} MB, "
                 "so it is no text log; name the logs alone"
             )
     if kept:
@@ -251,7 +262,8 @@ def _settle(found: Scan, number: int, line: bytes) -> None:
         found.set_aside.append((number, reason, line))
 
 
-def _note_setups(found: Scan, block: bytes) -> None:
+def note_setups(found: Scan, block: bytes) -> None:
+    """Add the setups in a block of whole lines to `found.setups`, numbered from `found.lines` on."""
     at = block.find(b"\tsetup\t")
     number, counted_to = found.lines + 1, 0
     while at >= 0:

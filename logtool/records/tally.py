@@ -25,7 +25,7 @@ BLANK, COMMENT = "blank", "comment"
 SPLIT = "string_split(line, chr(9))"
 FIELD = {name: f"f[{i}]" for i, name in enumerate(COLUMN_NAMES, 1)}
 _FIELDS = f"""epoch_us({FIELD["time"]}::TIMESTAMP) AS time_us, {FIELD["receiver"]} AS receiver,
-    {FIELD["dial_hz"]} AS dial_hz, {FIELD["mode"]} AS mode, {FIELD["sender"]} AS sender, {FIELD["locator"]} AS locator,
+    {FIELD["dial_hz"]} AS dial_hz, {FIELD["mode"]} AS mode, {FIELD["sender"]} AS sender, {{locator}} AS locator,
     nullif({FIELD["snr_db"]}, '')::DECIMAL(8, 6) AS snr_db"""
 # A group of the tally; `start_us` is the start of the hour, or of the piece of it after a cut.
 _KEYS = ("file", "start_us", "receiver", "dial_hz", "mode", "sender")
@@ -39,10 +39,11 @@ _LISTS = f"""count(*) AS n, list((time_us % {HOUR_US})::UINTEGER) AS times, list
 
 
 class Cuts(NamedTuple):
-    """Where hours are cut: by the table `cuts` (receiver, hour, start_us, stop_us), and at bounds."""
+    """Where hours are cut, by the table `cuts` (receiver, hour, start_us, stop_us) and at bounds; and locators."""
 
     by_setups: bool
     bounds: tuple[int, ...]  # microseconds since 1970
+    locator_characters: int | None = None  # None: whole
 
 
 class Odd(NamedTuple):
@@ -109,9 +110,12 @@ def _fields_sql(source: str, *, cuts: Cuts) -> str:
     for bound in cuts.bounds:
         after = f"time_us >= {bound} AND time_us // {HOUR_US} = {bound // HOUR_US}"
         pieces.append(f"CASE WHEN {after} THEN {bound} END")
+    locator = FIELD["locator"]
+    if cuts.locator_characters is not None:
+        locator = f"left({locator}, {cuts.locator_characters})"
     return f"""
         SELECT fields.*, greatest({", ".join(pieces)}) AS start_us
-        FROM (SELECT * EXCLUDE (f), {_FIELDS} FROM ({source})) AS fields {join}"""
+        FROM (SELECT * EXCLUDE (f), {_FIELDS.format(locator=locator)} FROM ({source})) AS fields {join}"""
 
 
 def _judged(connection: duckdb.DuckDBPyConnection) -> list[Odd]:

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from logtool.places.nights import night_name
 from logtool.records.engine import among
+from logtool.records.privacy import Privacy
 from logtool.records.quick import sql_text
 from logtool.tables.choice import NO_ANTENNA, Choice
 from logtool.tables.locators import make_pairs, resolve
@@ -33,11 +34,14 @@ def make_chosen(logs: Logs, choice: Choice) -> tuple[duckdb.DuckDBPyConnection, 
             CREATE OR REPLACE TEMP TABLE {name} AS
             SELECT * EXCLUDE (night), true AS whole, strftime(DATE '1970-01-01' + night::INTEGER, '%Y-%m-%d') AS night
             FROM {source} WHERE {where}""")
-    return connection, unknown_words(connection, choice)
+    return connection, unknown_words(connection, choice, logs.privacy)
 
 
-def conditions(choice: Choice, *, of_receptions: bool) -> list[str]:
-    """Return the SQL conditions of the choice on rows of `rollup` or, without mode and sender, `listening`."""
+def conditions(choice: Choice, *, of_receptions: bool, also_off: bool = False) -> list[str]:
+    """Return the SQL conditions of the choice on rows of `rollup` or, without mode and sender, `listening`.
+
+    Where no antenna is chosen, `none` is left out unless `also_off`.
+    """
     conditions = ["true"]
     if choice.from_us is not None:
         conditions.append(f"start_us >= {choice.from_us}")
@@ -48,7 +52,7 @@ def conditions(choice: Choice, *, of_receptions: bool) -> list[str]:
         conditions.append(f"({among('receiver', choice.receivers)} OR {among(plain, choice.receivers)})")
     if choice.antennas:
         conditions.append(among("antenna", choice.antennas))
-    else:
+    elif not also_off:
         conditions.append(f"antenna IS DISTINCT FROM {sql_text(NO_ANTENNA)}")
     if choice.bands:
         conditions.append(among("band", choice.bands))
@@ -62,8 +66,13 @@ def conditions(choice: Choice, *, of_receptions: bool) -> list[str]:
     return conditions
 
 
-def unknown_words(connection: duckdb.DuckDBPyConnection, choice: Choice) -> list[str]:
-    """Return a note for each chosen word that the inputs do not have, with those they have."""
+def unknown_words(
+    connection: duckdb.DuckDBPyConnection, choice: Choice, privacy: Privacy = Privacy()
+) -> list[str]:
+    """Return a note for each chosen word that the inputs do not have, with those they have.
+
+    Where senders are hidden no note names any.
+    """
     notes = []
     chosen = {
         "receiver": choice.receivers,
@@ -85,9 +94,13 @@ def unknown_words(connection: duckdb.DuckDBPyConnection, choice: Choice) -> list
             if len(known) <= MOST_NAMED
             else [*known[:MOST_NAMED], f"and {len(known) - MOST_NAMED} more"]
         )
-        for word in words:
-            if word not in known and word not in plain:
-                notes.append(f"no {key} {word!r} in the inputs; there are: {', '.join(some) or 'none'}")
+        missing = [word for word in words if word not in known and word not in plain]
+        if missing and key == "sender" and privacy.key is not None:
+            notes.append(f"{len(missing)} of {len(words)} senders chosen: not in the inputs")
+            continue
+        notes += [
+            f"no {key} {word!r} in the inputs; there are: {', '.join(some) or 'none'}" for word in missing
+        ]
     return notes
 
 

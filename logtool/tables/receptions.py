@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from logtool.records.quick import accepts_sql
+from logtool.records import each
 from logtool.records.tally import FIELD, HOUR_US, SPLIT
 from logtool.tables.choice import Choice
 from logtool.tables.chosen import conditions
@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from logtool.records.reader import Logs
 
 
-def receptions_sql(logs: Logs, choice: Choice) -> str:
+def receptions_sql(logs: Logs, choice: Choice, *, also_off: bool = False) -> str:
     """Return the SQL of a relation of the receptions that the choice counts, each record once.
 
     It has file (index), raw (the line), time_us, receiver (its name), antenna, place, band, hour,
@@ -26,16 +26,13 @@ def receptions_sql(logs: Logs, choice: Choice) -> str:
         Opened logs.
     choice : Choice
         Which receptions.
+    also_off : bool
+        Also those with the antenna off, where no antenna is chosen.
     """
     make_rollup(logs, choice)
-    lines = f"""
-        SELECT file, line FROM {logs.lines} WHERE {accepts_sql("heard")}
-        UNION ALL FROM odd_heard"""
-    if any(file.repeated for file in logs.inputs):
-        lines = f"SELECT min(file) AS file, line FROM ({lines}) GROUP BY line"
-    where = " AND ".join(conditions(choice, of_receptions=True))
+    where = " AND ".join(conditions(choice, of_receptions=True, also_off=also_off))
     return f"""(
-        WITH split AS (SELECT file, line AS raw, {SPLIT} AS f FROM ({lines})),
+        WITH split AS (SELECT file, line AS raw, {SPLIT} AS f FROM {each.receptions_sql(logs)}),
         fields AS (
             SELECT file, raw, f, epoch_us({FIELD["time"]}::TIMESTAMP) AS time_us, {FIELD["receiver"]} AS receiver,
                 {FIELD["dial_hz"]} AS dial_hz, {FIELD["mode"]} AS mode, upper({FIELD["sender"]}) AS sender,

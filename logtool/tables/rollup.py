@@ -125,19 +125,32 @@ def _make_spots(logs: Logs) -> None:
             CASE WHEN piece.receiver IN (SELECT receiver FROM event WHERE kind = 'watch')
                 THEN 'recorded' ELSE 'assumed' END AS listening
         FROM piece ASOF JOIN station ON piece.receiver = station.receiver AND start_us >= since_us""")
-    hours = connection.execute("SELECT DISTINCT lon_deg, hour FROM spot ORDER BY ALL").fetchall()
+    make_hour_nights(connection, "hour_night", "SELECT DISTINCT lon_deg, hour FROM spot")
+    connection.execute("""
+        CREATE OR REPLACE TEMP TABLE spot AS
+        SELECT spot.*, night FROM spot JOIN hour_night
+            ON spot.hour = hour_night.hour AND spot.lon_deg IS NOT DISTINCT FROM hour_night.lon_deg""")
+
+
+def make_hour_nights(connection: duckdb.DuckDBPyConnection, name: str, wanted: str) -> None:
+    """Make a table of lon_deg (null: no place), hour and the night that the hour belongs to.
+
+    Parameters
+    ----------
+    connection : duckdb.DuckDBPyConnection
+        Where the table is made.
+    name : str
+        The table's name.
+    wanted : str
+        SQL of a query of distinct `lon_deg` and `hour`.
+    """
+    hours = connection.execute(f"{wanted} ORDER BY ALL").fetchall()
     nights: list[int] = []
     for lon_deg in dict.fromkeys(lon for lon, _ in hours):
         of_lon = np.array([hour for lon, hour in hours if lon == lon_deg])
         nights += night_of_hours(of_lon * 3600.0, lon_deg).tolist()
     columns = {"lon_deg": "DOUBLE", "hour": "BIGINT", "night": "BIGINT"}
-    create_table(
-        connection, "hour_night", columns, [[lon for lon, _ in hours], [h for _, h in hours], nights]
-    )
-    connection.execute("""
-        CREATE OR REPLACE TEMP TABLE spot AS
-        SELECT spot.*, night FROM spot JOIN hour_night
-            ON spot.hour = hour_night.hour AND spot.lon_deg IS NOT DISTINCT FROM hour_night.lon_deg""")
+    create_table(connection, name, columns, [[lon for lon, _ in hours], [h for _, h in hours], nights])
 
 
 def _make_pieces(connection: duckdb.DuckDBPyConnection) -> None:

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 from logtool.places.locator import centre, written
 
 if TYPE_CHECKING:
+    from logtool.records.privacy import Privacy
     from logtool.records.reader import Logs, Setup
 
 APART_KM = 10.0  # places farther apart are different receivers; design, section 4
@@ -49,21 +50,22 @@ def stations(logs: Logs, receivers: list[str]) -> list[Station]:
         setups = logs.setups.get(receiver)
         if setups:
             found.append(Station(receiver, BEFORE_ALL_US, receiver, None, None, None))
-            found += _set_up(receiver, setups)
+            found += _set_up(receiver, setups, logs.privacy)
         else:
-            place = written(logs.at) if logs.at else None
+            place = written(logs.privacy.locator(logs.at)) if logs.at else None
             lon_deg = _lon_deg(place) if place else None
             antenna = logs.antenna_name
             found.append(Station(receiver, BEFORE_ALL_US, receiver, antenna, place, lon_deg))
     return found
 
 
-def _set_up(receiver: str, setups: list[Setup]) -> list[Station]:
-    first_of = _first_places([setup.locator for setup in setups])
+def _set_up(receiver: str, setups: list[Setup], privacy: Privacy) -> list[Station]:
+    locators = [privacy.locator(setup.locator) for setup in setups]
+    first_of = _first_places(locators)
     several = len(set(first_of.values())) > 1
     found = []
-    for setup in setups:
-        place = written(setup.locator)
+    for setup, locator in zip(setups, locators, strict=True):
+        place = written(locator)
         first = first_of[place]
         name = f"{receiver}@{first}" if several else receiver
         found.append(Station(receiver, setup.time_us, name, setup.antenna, place, _lon_deg(first)))

@@ -13,8 +13,8 @@ from tests.docs.running import ROOT
 
 HOUSE = ROOT / "logtool"
 GUIDE = (ROOT / "DEVELOPERS.md").read_text(encoding="utf-8")
-ROOMS = ["records", "places", "tables", "pages", "cli"]
-HEAVY = {"pandas", "folium", "branca", "jinja2", "rich", "pyproj", "duckdb", "zstandard"}
+ROOMS = ["records", "suggest", "places", "tables", "exports", "pages", "cli"]
+HEAVY = {"pandas", "folium", "branca", "jinja2", "rich", "pyproj", "duckdb", "zstandard", "pyarrow"}
 MODULES = sorted(HOUSE.rglob("*.py"))
 
 

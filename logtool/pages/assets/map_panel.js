@@ -67,7 +67,8 @@ logtoolMap.panel = (() => {
     const panel = document.getElementById("sender");
     panel.replaceChildren();
     if (!page.selected) {
-      panel.append(make("p", "Choose a circle on the map or a name in the list to see its figures and the lines behind them."));
+      const lines = page.model.files.length ? " and the lines behind them" : "";
+      panel.append(make("p", `Choose a circle on the map or a name in the list to see its figures${lines}.`));
       return;
     }
     const { sender } = page.selected;

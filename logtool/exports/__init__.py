@@ -1,0 +1,1 @@
+"""Records and tables in, open formats out."""

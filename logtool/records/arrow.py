@@ -1,0 +1,81 @@
+"""Records as Arrow tables and batches, typed."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from typing import TYPE_CHECKING
+
+from logtool.records.each import LAYOUT_COLUMNS, fields_sql, receptions_sql, shown_sql, typed_sql
+
+if TYPE_CHECKING:
+    import duckdb
+    import pyarrow as pa
+
+    from logtool.records.reader import Logs
+
+BATCH_ROWS = 1 << 16  # of one batch, so of one row group in a Parquet file; our choice
+
+
+def schema_of(columns: dict[str, str], metadata: dict[str, str] | None = None) -> pa.Schema:
+    """Return the Arrow schema of columns, each given with its kind.
+
+    Parameters
+    ----------
+    columns : dict of str to str
+        Names and kinds: `time` (UTC, microseconds), `text`, `integer`, `number` or `flag`.
+    metadata : dict of str to str, optional
+        What the schema says beside.
+    """
+    import pyarrow as pa
+
+    types = {
+        "time": pa.timestamp("us", tz="UTC"),
+        "text": pa.string(),
+        "integer": pa.int64(),
+        "number": pa.float64(),
+        "flag": pa.bool_(),
+    }
+    return pa.schema([(name, types[kind]) for name, kind in columns.items()], metadata)
+
+
+def batches(connection: duckdb.DuckDBPyConnection, query: str, schema: pa.Schema) -> Iterator[pa.RecordBatch]:
+    """Give the rows of a query in batches of `BATCH_ROWS` (the last has fewer), however the engine gives them.
+
+    The connection must not be used for anything else meanwhile.
+    """
+    import pyarrow as pa
+
+    waiting = schema.empty_table()
+    for batch in connection.sql(query).to_arrow_reader(BATCH_ROWS):
+        waiting = pa.concat_tables([waiting, pa.Table.from_batches([batch]).cast(schema)])
+        while waiting.num_rows >= BATCH_ROWS:
+            yield from waiting.slice(0, BATCH_ROWS).combine_chunks().to_batches()
+            waiting = waiting.slice(BATCH_ROWS)
+    yield from waiting.combine_chunks().to_batches()
+
+
+def records_arrow(logs: Logs) -> pa.Table:
+    """Return all records of opened logs, typed, each once, in the order of time (then of their bytes).
+
+    `text` is as written, with its escapes; what a line leaves empty is null. No choice is applied, so
+    nothing is left out, also not what was heard with the antenna off.
+
+    Parameters
+    ----------
+    logs : Logs
+        Opened logs, see `logtool.open_logs`.
+
+    Returns
+    -------
+    pyarrow.Table
+        One row a record with the columns of the layout: `time` as a timestamp in UTC, `dial_hz` as an
+        integer, other numbers as doubles, the rest as strings.
+    """
+    import pyarrow as pa
+
+    logs.tally()
+    lines = f"(SELECT line FROM {receptions_sql(logs)} UNION ALL SELECT line FROM odd_records)"
+    columns = ", ".join(f"{typed_sql(name)} AS {name}" for name in LAYOUT_COLUMNS)
+    query = f"SELECT {columns} FROM {shown_sql(logs, fields_sql(lines))} ORDER BY time_us, raw"
+    schema = schema_of(LAYOUT_COLUMNS)
+    return pa.Table.from_batches(batches(logs.connection, query, schema), schema)

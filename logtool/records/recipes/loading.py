@@ -1,0 +1,308 @@
+"""Read and check a recipe: every key, name and pattern, with the line where something is wrong."""
+
+from __future__ import annotations
+
+import codecs
+import os
+import re
+import tomllib
+from pathlib import Path
+from typing import Any
+
+from logtool.errors import FileError
+from logtool.records.layout import KEY_FORM, KINDS
+from logtool.records.recipes.fields import Fields
+from logtool.records.recipes.names import PIECES, target_of
+from logtool.records.recipes.patterns import groups_of, template_pattern
+from logtool.records.recipes.recipe import (
+    CARRY,
+    HEADER_RULE,
+    MORE_COLUMNS,
+    RECIPE_VERSION,
+    SKIP,
+    SPACE,
+    Form,
+    Recipe,
+    Rule,
+)
+
+DEFAULT_MESSAGES = (  # common practice, no source: the station called first, the caller second
+    "CQ|QRZ [{word}] [DE] {sender} [{locator}] ...",
+    "{addressee} [DE] {sender} [R] {locator} ...",
+    "{addressee} [DE] {sender} {report_db} ...",
+    "{addressee} [DE] {sender} ...",
+    "DE {sender} [{locator}] ...",
+)
+NEVER_LOCATORS = ("RR73",)
+_FORMS = ("pattern", "separator", "fixed", "json")
+_RULE_NAME = r"[a-z][a-z0-9-]{0,31}"
+_MOST_KIB = 1024
+
+
+def load_recipe(path: str | os.PathLike[str]) -> Recipe:
+    """Return the recipe in a file.
+
+    Raises
+    ------
+    FileError
+        Where the file cannot be read.
+    RecipeError
+        Where something in it cannot be used; the message names the file, the line and the key.
+    """
+    try:
+        with Path(path).open("rb") as file:
+            raw = file.read((_MOST_KIB << 10) + 1)
+    except OSError as error:
+        raise FileError(f"{path}: the recipe cannot be read ({error.strerror}); check the path") from error
+    if len(raw) > _MOST_KIB << 10:
+        raise FileError(f"{path}: it is over {_MOST_KIB} KiB, so it is no recipe; did you name the log?")
+    try:
+        text = raw.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        raise FileError(f"{path}: a recipe is UTF-8 text, and this is not; save it as UTF-8") from error
+    return recipe_of(text, os.fspath(path))
+
+
+def recipe_of(text: str, name: str) -> Recipe:
+    """Return the recipe that a text is; `name` stands for it in errors. See `load_recipe`."""
+    try:
+        told = tomllib.loads(text)
+    except tomllib.TOMLDecodeError as error:
+        raise Fields({}, text, name).error(
+            None, f"it is no TOML ({error}); a pattern is best written in '...'"
+        ) from error
+    top = Fields(told, text, name)
+    version = top.take("recipe", int)
+    if version != RECIPE_VERSION:
+        raise top.error("recipe", f"write recipe = {RECIPE_VERSION}, the version that this program reads")
+    keep = top.words("keep")
+    for word in keep:
+        if not re.fullmatch(KEY_FORM, word) or word in PIECES:
+            raise top.error("keep", f"{word!r} is no name for `more`: small letters, digits, _; not one in use")
+    rules = _rules(top, keep)
+    named = top.table("name")
+    name_pattern = named.pattern("pattern")
+    if name_pattern is not None:
+        _check_names(named, "pattern", [n for n in groups_of(name_pattern) if n], keep)
+    message = top.table("message") if "message" in top else None
+    recipe = Recipe(
+        name=name,
+        text=text,
+        rules=rules,
+        about=top.take("about", str, ""),
+        encoding=_encoding(top),
+        zone=_zone(top),
+        slot_s=top.number("slot_s", 0.1, 3600),
+        marks_end=top.one_of("time_marks", ("start", "end")) == "end",
+        time_step_s=float(step) if (step := top.number("time_step_s", 1, 3600)) else None,
+        decimal=top.one_of("decimal", (".", ",")),
+        empty=top.words("empty"),
+        skip=top.patterns("skip"),
+        keep=keep,
+        constants=_constants(top.table("constants"), keep),
+        name_pattern=name_pattern,
+        name_date_form=named.take("date_form", str, None),
+        values=_values(top, keep, rules),
+        messages=None if message is None else _messages(message),
+        never_locators=NEVER_LOCATORS if message is None else message.words("never_locators", NEVER_LOCATORS),
+    )
+    for fields in (top, named, *([message] if message else [])):
+        fields.finish()
+    _check_whole(top, recipe)
+    return recipe
+
+
+def _encoding(top: Fields) -> str:
+    encoding: str = top.take("encoding", str, "utf-8")
+    try:
+        info = codecs.lookup(encoding)
+        "".encode(info.name)  # some codecs are of other things than text
+    except (LookupError, UnicodeError) as error:
+        raise top.error(
+            "encoding", f"there is no encoding {encoding!r}; common are utf-8, utf-16, latin-1, cp1252"
+        ) from error
+    return info.name
+
+
+def _zone(top: Fields) -> str:
+    from zoneinfo import ZoneInfo
+
+    zone: str = top.take("zone", str, "UTC")
+    try:
+        ZoneInfo(zone)
+    except (KeyError, ValueError, OSError) as error:
+        raise top.error(
+            "zone", f"{zone!r} is no time zone; write its IANA name, like UTC or Atlantic/Azores"
+        ) from error
+    return zone
+
+
+def _rules(top: Fields, keep: tuple[str, ...]) -> tuple[Rule, ...]:
+    tables = top.tables("line")
+    if not tables:
+        raise top.error(None, "it has no [[line]], so no line could be read; see docs/recipes.md")
+    rules: list[Rule] = []
+    for fields in tables:
+        rule = _rule(fields, keep)
+        fields.finish()
+        if rule.name in {other.name for other in rules}:
+            raise fields.error("kind", f"there are two rules called {rule.name!r}; give this one a name")
+        rules.append(rule)
+    return tuple(rules)
+
+
+def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
+    kind = fields.one_of("kind", (*KINDS, CARRY, SKIP), needed=True)
+    name = fields.take("name", str, kind)
+    if not re.fullmatch(_RULE_NAME, name) or name == HEADER_RULE:
+        raise fields.error("name", f"{name!r}: a rule's name has small letters, digits and -; not `{HEADER_RULE}`")
+    given = [way for way in _FORMS if way in fields]
+    if len(given) != 1:
+        raise fields.error("kind", f"it needs one of {', '.join(_FORMS)}; it has {' and '.join(given) or 'none'}")
+    form, pieces = _form(fields, given[0])
+    twice = sorted({piece for piece in pieces if pieces.count(piece) > 1})
+    if twice:
+        raise fields.error(given[0], f"{twice[0]!r} stands twice; give one of them another name")
+    where = fields.strings("where")
+    for piece, pattern in where.items():
+        fields.check_pattern("where", pattern)
+        if piece not in pieces:
+            raise fields.error("where", f"{piece!r} is no piece of this line; it has {', '.join(pieces)}")
+    wanted = tuple(piece for piece in pieces if piece not in where or piece in PIECES or piece in keep)
+    _check_names(fields, given[0], wanted, keep)
+    carry = fields.words("carry", wanted if kind == CARRY else ())
+    for piece in carry:
+        if piece not in wanted:
+            raise fields.error("carry", f"{piece!r} is no piece of this line; it has {', '.join(wanted)}")
+    if kind == CARRY and not carry:
+        raise fields.error(given[0], "a line of the kind `carry` needs a piece that has a name")
+    time_form = fields.time_form("time_form", "iso")
+    date_form = fields.time_form("date_form", None)
+    if "date" in wanted and date_form is None:
+        raise fields.error(given[0], "it has a piece `date`: say how it is written, like date_form = \"%Y-%m-%d\"")
+    if kind not in (CARRY, SKIP) and "time" not in wanted:
+        raise fields.error(given[0], f"a line of the kind `{kind}` needs a piece `time`")
+    constants = _constants(fields.table("constants"), keep)
+    return Rule(name, kind, form, wanted, where, time_form or "iso", date_form, carry, constants)
+
+
+def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
+    if way == "pattern":
+        pattern = fields.pattern("pattern")
+        assert pattern is not None
+        return Form(pattern=pattern), tuple(name for name in groups_of(pattern) if name)
+    if way == "fixed":
+        return _fixed(fields)
+    if way == "json":
+        paths = fields.strings("json")
+        if not paths:
+            raise fields.error("json", "it names no piece")
+        return Form(json={name: tuple(path.split(".")) for name, path in paths.items()}), tuple(paths)
+    separator = fields.take("separator", str)
+    if separator != SPACE and len(separator) != 1:
+        raise fields.error("separator", f"{separator!r}: one character, or {SPACE!r} for runs of blanks")
+    if separator in ('"', " ", "\n"):
+        raise fields.error("separator", f"{separator!r} cannot separate columns; write {SPACE!r} for blanks")
+    if fields.take("header", bool, False):
+        if separator == SPACE:
+            raise fields.error("header", "with blanks as separators the columns have to be named in `columns`")
+        header = fields.strings("columns")
+        if not header:
+            raise fields.error("columns", 'with header = true it is a table, like { time = "UTC" }')
+        return Form(separator=separator, header=header), tuple(header)
+    columns = fields.words("columns")
+    more = columns[-1:] == (MORE_COLUMNS,)
+    columns = columns[:-1] if more else columns
+    if not any(columns):
+        raise fields.error("columns", 'name the columns in order, like ["time", "snr_db", "", "text"]')
+    pieces = tuple(name for name in columns if name)
+    return Form(separator=separator, columns=columns, more_columns=more), pieces
+
+
+def _fixed(fields: Fields) -> tuple[Form, tuple[str, ...]]:
+    fixed: dict[str, tuple[int, int | None]] = {}
+    for name, span in fields.take("fixed", dict).items():
+        whole = isinstance(span, list) and len(span) in (1, 2) and all(type(end) is int for end in span)
+        if not whole or span[0] < 1 or span[-1] < span[0]:
+            raise fields.error("fixed", f"{name}: first and last character, from 1, like [1, 6]; not {span}")
+        fixed[name] = (span[0], span[1] if len(span) > 1 else None)
+    if not fixed:
+        raise fields.error("fixed", "it names no piece")
+    return Form(fixed=fixed), tuple(fixed)
+
+
+def _check_names(fields: Fields, key: str, names: tuple[str, ...] | list[str], keep: tuple[str, ...]) -> None:
+    for name in names:
+        if name in PIECES or name in keep:
+            continue
+        alike = [known for known in PIECES if known.startswith(name) or name.startswith(known.split("_")[0])]
+        hint = f"did you mean {' or '.join(alike[:3])}? " if alike else ""
+        raise fields.error(
+            key, f"{name!r} is no known name; {hint}The names stand in docs/recipes.md; list others in `keep`"
+        )
+
+
+def _constants(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
+    constants = {}
+    for name in list(fields):
+        if name in ("locator", "time", "date", "text"):
+            hint = "the receiver's own locator is called `place`" if name == "locator" else "it belongs to a line"
+            raise fields.error(name, f"{name!r} cannot be a constant: {hint}")
+        _check_names(fields, name, [name], keep)
+        value = fields.take(name, (str, int, float))
+        constants[name] = str(value)
+    return constants
+
+
+def _values(top: Fields, keep: tuple[str, ...], rules: tuple[Rule, ...]) -> dict[str, dict[str, str]]:
+    values = {}
+    table = top.table("values")
+    for name in list(table):
+        if not any(name in rule.pieces for rule in rules):
+            raise table.error(name, f"no line has a piece {name!r}")
+        values[name] = table.strings(name)
+    return values
+
+
+def _messages(fields: Fields) -> tuple[str, ...]:
+    patterns = []
+    for template in fields.words("patterns", DEFAULT_MESSAGES):
+        try:
+            patterns.append(template_pattern(template))
+        except ValueError as error:
+            raise fields.error("patterns", f"{template!r}: {error}") from error
+        names = groups_of(patterns[-1])
+        if len(set(names)) < len(names):
+            raise fields.error("patterns", f"{template!r} names a part twice")
+        if "sender" not in names:
+            raise fields.error("patterns", f"{template!r} has no {{sender}}")
+    return tuple(patterns)
+
+
+def _check_whole(top: Fields, recipe: Recipe) -> None:
+    """Stop where no line could ever become a record for want of a value that it needs."""
+    anywhere = {target_of(name) for name in recipe.constants}
+    if recipe.name_pattern:
+        anywhere |= {target_of(name) for name in groups_of(recipe.name_pattern) if name}
+    for rule in recipe.rules:
+        anywhere |= {target_of(name) for name in rule.carry}
+    if recipe.marks_end and recipe.slot_s is None:
+        raise top.error("time_marks", 'time_marks = "end" needs slot_s, the length of a slot')
+    if recipe.name_pattern and "date" in groups_of(recipe.name_pattern) and recipe.name_date_form is None:
+        raise top.error("name", 'the date in the file\'s name needs date_form, like date_form = "%Y%m%d"')
+    if not any(rule.is_record for rule in recipe.rules):
+        raise top.error("line", "no [[line]] makes a record; one needs kind = \"heard\"")
+    for rule in recipe.rules:
+        own = anywhere | {target_of(name) for name in (*rule.pieces, *rule.constants)}
+        if rule.is_record and "receiver" not in own:
+            raise top.error(
+                "constants", f'no receiver for lines {rule.name!r}: add receiver = "NAME" to [constants]'
+            )
+        if rule.kind in ("heard", "setup") and not own & {"dial_hz", "signal_hz"}:
+            raise top.error(
+                "constants", f"no dial for lines {rule.name!r}: add dial_hz = ... (or dial_khz) to [constants]"
+            )
+        if rule.kind == "watch" and "on_s" not in own:
+            raise top.error("constants", f"lines {rule.name!r} need on_s: add constants = {{ on_s = 15 }} to it")
+        if rule.kind == "noise" and "dbfs" not in own:
+            raise top.error("constants", f"lines {rule.name!r} need a piece `dbfs`")

@@ -1,0 +1,160 @@
+"""From the times of one file, in the order of its lines, to UTC: dates, new days, new years and zones."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from logtool.records.recipes.timeforms import ABSOLUTE, OF_DAY, YEARLESS
+from logtool.records.recipes.zones import SECOND_US, both_utc_us
+
+DAY_US = 86_400 * SECOND_US
+NEW_DAY_US = DAY_US // 2  # a fall by more is a new day, a smaller one a step of the clock
+BACK_US = 120 * SECOND_US  # so little back over midnight is a step of the clock and no gap of a day; our choice
+_NEW_YEAR_US = 182 * DAY_US  # a fall by more, in times without a year, is a new year
+_ORDER_SLACK_US = 600 * SECOND_US  # lines may be so much out of order in an hour that comes twice; our choice
+NO_TIME = np.iinfo(np.int64).min
+
+
+@dataclass
+class ClockNotes:
+    """What was met in a file's times: how often, and the number of the first line."""
+
+    steps: int = 0  # falls of the time of day that are no new day
+    first_step: int = 0
+    largest_step_s: float = 0.0
+    doubtful: int = 0  # in an hour that the clock had twice
+    first_doubtful: int = 0
+    skipped: int = 0  # in an hour that the clock never had
+
+
+class FileClock:
+    """The times of one file; holds what goes from one block of its lines to the next.
+
+    Parameters
+    ----------
+    zone : str
+        IANA name of the zone of all times that name no offset.
+    day_us : int, optional
+        The date at which the file begins, as midnight in microseconds since 1970.
+    """
+
+    def __init__(self, zone: str, day_us: int | None) -> None:
+        self.notes = ClockNotes()
+        self._zone = zone
+        self._day_us = day_us
+        self._last_of_day_us: int | None = None
+        self._year: int | None = None if day_us is None else _years(np.array([day_us]))[0]
+        self._last_in_year_us: int | None = None
+        self._last_utc_us = NO_TIME
+
+    def utc_us(
+        self, lines: np.ndarray, lacking: np.ndarray, stamps_us: np.ndarray, days_us: np.ndarray
+    ) -> np.ndarray:
+        """Return UTC in microseconds since 1970; `NO_TIME` where no date is known.
+
+        Parameters
+        ----------
+        lines : ndarray of int64, shape (n,)
+            Line numbers, rising.
+        lacking : ndarray of int, shape (n,)
+            What each time lacks, see `timeforms`; -1 where the line has no time.
+        stamps_us : ndarray of int64, shape (n,)
+            The times as far as they are written.
+        days_us : ndarray of int64, shape (n,)
+            Dates that lines give, `NO_TIME` where they give none.
+        """
+        local_us = np.where(lacking >= 0, stamps_us, NO_TIME)
+        of_day = lacking == OF_DAY
+        if of_day.any() or (days_us != NO_TIME).any():
+            local_us[of_day] = self._with_days(lines, of_day, stamps_us, days_us)
+        yearless = lacking == YEARLESS
+        if yearless.any():
+            local_us[yearless] = self._with_years(stamps_us[yearless])
+        known = local_us != NO_TIME
+        shifted = known & (lacking != ABSOLUTE)
+        utc_us = local_us
+        if self._zone != "UTC" and shifted.any():
+            utc_us[shifted] = self._from_zone(lines[shifted], local_us[shifted])
+        if known.any():
+            self._last_utc_us = int(utc_us[known][-1])
+        return utc_us
+
+    def _with_days(
+        self, lines: np.ndarray, of_day: np.ndarray, stamps_us: np.ndarray, days_us: np.ndarray
+    ) -> np.ndarray:
+        """Return times of day with their days: each goes on from the last date that a line gave."""
+        given = np.flatnonzero(days_us != NO_TIME)
+        at = np.flatnonzero(of_day)
+        if len(given):
+            self._year, self._last_in_year_us = int(_years(days_us[given[-1:]])[0]), None
+        if not len(at):
+            self._day_us, self._last_of_day_us = int(days_us[given[-1]]), None
+            return stamps_us[at]
+        segment = np.searchsorted(given, at, side="right")  # 0: goes on from the block before
+        start_us = NO_TIME if self._day_us is None else self._day_us
+        bases_us = np.concatenate(([start_us], days_us[given]))
+        times_us = stamps_us[at]
+        before_us = np.concatenate(
+            ([self._last_of_day_us if self._last_of_day_us is not None else -1], times_us[:-1])
+        )
+        fresh = np.concatenate(([0], segment[:-1])) != segment
+        fresh |= before_us < 0
+        rise_us = np.where(fresh, 0, times_us - before_us)
+        new_day = rise_us < -NEW_DAY_US
+        back = rise_us > DAY_US - BACK_US
+        steps = ((rise_us < 0) & ~new_day) | back
+        self._note_steps(lines[at], np.where(back, rise_us - DAY_US, rise_us), steps)
+        days = np.cumsum(new_day.astype(np.int64) - back)
+        starts = np.searchsorted(segment, np.arange(len(bases_us)))  # the first time of each segment
+        before_days = np.concatenate(([0], days))[starts]
+        days = days - before_days[segment]
+        with_days = np.where(bases_us[segment] == NO_TIME, NO_TIME, bases_us[segment] + days * DAY_US + times_us)
+        if segment[-1] != len(given):
+            self._day_us, self._last_of_day_us = int(days_us[given[-1]]), None
+        else:
+            base_us = bases_us[segment[-1]]
+            self._day_us = None if base_us == NO_TIME else int(base_us + days[-1] * DAY_US)
+            self._last_of_day_us = int(times_us[-1])
+        return with_days
+
+    def _note_steps(self, lines: np.ndarray, rise_us: np.ndarray, steps: np.ndarray) -> None:
+        if steps.any():
+            self.notes.first_step = self.notes.first_step or int(lines[steps][0])
+            self.notes.steps += int(steps.sum())
+            largest_s = float(-rise_us[steps].min() / SECOND_US)
+            self.notes.largest_step_s = max(self.notes.largest_step_s, largest_s)
+
+    def _with_years(self, stamps_us: np.ndarray) -> np.ndarray:
+        """Return times that were read in the year 2000 with their years."""
+        if self._year is None:
+            return np.full(len(stamps_us), NO_TIME)
+        first = stamps_us[0] if self._last_in_year_us is None else self._last_in_year_us
+        rise_us = np.diff(stamps_us, prepend=first)
+        years = self._year + np.cumsum(rise_us < -_NEW_YEAR_US)
+        self._year, self._last_in_year_us = int(years[-1]), int(stamps_us[-1])
+        read = stamps_us.astype("M8[us]")
+        month = read.astype("M8[M]")
+        months = (years - 1970).astype("M8[Y]").astype("M8[M]") + (month - read.astype("M8[Y]").astype("M8[M]"))
+        moved = months.astype("M8[us]") + (read - month.astype("M8[us]"))
+        there = moved.astype("M8[M]") == months  # no 29 February in this year
+        return np.where(there, moved.astype(np.int64), NO_TIME)
+
+    def _from_zone(self, lines: np.ndarray, local_us: np.ndarray) -> np.ndarray:
+        earlier_us, later_us, skipped = both_utc_us(local_us, self._zone)
+        self.notes.skipped += int(skipped.sum())
+        doubtful = np.flatnonzero(earlier_us != later_us)
+        utc_us = earlier_us
+        if len(doubtful):
+            self.notes.first_doubtful = self.notes.first_doubtful or int(lines[doubtful[0]])
+            self.notes.doubtful += len(doubtful)
+        for i in doubtful.tolist():  # in order: each is read by the line before
+            last_us = int(utc_us[i - 1]) if i else self._last_utc_us
+            if earlier_us[i] < last_us - _ORDER_SLACK_US and last_us != NO_TIME:
+                utc_us[i] = later_us[i]
+        return utc_us
+
+
+def _years(instants_us: np.ndarray) -> np.ndarray:
+    return instants_us.astype("M8[us]").astype("M8[Y]").astype(np.int64) + 1970

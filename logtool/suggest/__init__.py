@@ -1,0 +1,1 @@
+"""From an unknown text to a recipe for it."""
