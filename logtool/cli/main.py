@@ -21,6 +21,7 @@ COMMANDS = {
     "between": "Conversations between two other stations.",
     "lines": "The lines behind a figure.",
     "map": "One offline map as an HTML file.",
+    "convert": "Records as the layout, or in open formats for other programs.",
 }
 EXIT_INTERRUPTED = 130
 EXIT_FAILED = 3

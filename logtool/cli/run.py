@@ -190,12 +190,10 @@ def _json(value: Any) -> str:
 
 
 def _write_csv(out: IO[str], table: Table) -> None:
-    """Write the rows after RFC 4180, with a header, missing values empty."""
+    """Write the rows after RFC 4180, with a header, missing values empty and no text a spreadsheet would run."""
+    from logtool.exports.cells import cell_of
+
     writer = csv.writer(out, lineterminator="\r\n")
     writer.writerow(table.columns)
     for row in table.rows():
-        writer.writerow(["" if value is None else _csv_value(value) for value in row.values()])
-
-
-def _csv_value(value: Any) -> Any:
-    return str(value).lower() if isinstance(value, bool) else value
+        writer.writerow([cell_of(value) for value in row.values()])

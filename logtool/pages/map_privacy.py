@@ -9,12 +9,11 @@ from dataclasses import replace
 from logtool.records.privacy import Privacy
 from logtool.tables.choice import Choice
 
-# The greatest cells there are, at the equator, to the next 10 km, km and 0.1 km. [km south to north, west to east]
-CELLS = {4: "110 by 220 km", 6: "5 by 9 km", 8: "0.5 by 0.9 km"}
-_TOLD = frozenset(  # no other option is told: it may name a file
-    "from to receiver antenna band mode night sender gap_min at antenna_name "
-    "coarsen without_text hide_senders".split()
-)
+# South to north by west to east; the latter is that at the equator. Two digits.
+CELLS = {4: "about 110 by up to 220 km", 6: "about 4.6 by up to 9.3 km", 8: "about 0.46 by up to 0.93 km"}
+# No other option is told: it may name a file.
+_CHOOSING = ("from", "to", "receiver", "antenna", "band", "mode", "night", "sender", "gap_min")
+_TOLD = (*_CHOOSING, "at", "antenna_name", "date", "anyway", "coarsen", "without_text", "hide_senders")
 _PLACE_IN_NAME = re.compile(r"(?<=@)[A-Za-z0-9]+")  # of `NAME@LOCATOR`
 
 
@@ -60,13 +59,13 @@ def privacy_notes(privacy: Privacy) -> list[str]:
     --------
     >>> for note in privacy_notes(Privacy(coarsen=6)):
     ...     print(note)
-    places are cut to 6 characters (cells of up to 5 by 9 km), and distances and bearings go by these
+    places are cut to 6 characters (cells of about 4.6 by up to 9.3 km), and distances and bearings go by these
     left out of this page: files and their names, messages, and which lines are behind a figure
     """
     notes = []
     if privacy.coarsen is not None:
         notes.append(
-            f"places are cut to {privacy.coarsen} characters (cells of up to {CELLS[privacy.coarsen]}), "
+            f"places are cut to {privacy.coarsen} characters (cells of {CELLS[privacy.coarsen]}), "
             "and distances and bearings go by these"
         )
     if privacy.key is not None:

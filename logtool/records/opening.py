@@ -71,7 +71,11 @@ def open_logs(
     1
     """
     options = OpenOptions(
-        threads, memory_mb, anyway=anyway, recipe=recipe_for(recipe), day_us=day_us_of(date, with_recipe=recipe)
+        threads,
+        memory_mb,
+        anyway=anyway,
+        recipe=recipe_for(recipe),
+        day_us=day_us_of(date, with_recipe=recipe),
     )
     return open_with(paths, at, antenna_name, options)
 

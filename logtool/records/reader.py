@@ -6,7 +6,7 @@ import os
 import tempfile
 from collections import defaultdict
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from itertools import pairwise
 from pathlib import Path
 from types import TracebackType
@@ -14,8 +14,8 @@ from typing import TYPE_CHECKING
 
 from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
-from logtool.records.privacy import Privacy
 from logtool.records.marks import MARK
+from logtool.records.privacy import Privacy
 from logtool.records.progress import LOOK_SHARE, Polled, Progress
 from logtool.records.scan import LEAST_MEMORY_MB, EndlessLineError, Scan, ScanOptions, scan
 from logtool.records.sources import STDIN, Source, UnreadableError, sources_of
@@ -52,7 +52,7 @@ class OpenOptions:
         False  # read the other files where one is missing or unreadable, and name it in `refused`
     )
     progress: Progress | None = None
-    privacy: Privacy = Privacy()
+    privacy: Privacy = field(default_factory=Privacy)
     recipe: Recipe | None = None  # how files that do not follow the layout are read
     day_us: int | None = None  # the date at which such files begin, where they name none
 

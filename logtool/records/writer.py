@@ -7,7 +7,7 @@ import tempfile
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
-from typing import IO
+from typing import IO, Any
 
 from logtool.errors import FileError
 
@@ -28,15 +28,28 @@ def whole_file(path: str | os.PathLike[str]) -> Iterator[IO[str]]:
     FileError
         Where the file cannot be written; the message says why.
     """
+    with _whole(path, "w", encoding="utf-8", errors="surrogateescape", newline="") as file:
+        yield file
+
+
+@contextmanager
+def whole_bytes(path: str | os.PathLike[str]) -> Iterator[IO[bytes]]:
+    """Give a file for bytes that takes the place of `path` when all is written; as `whole_file`."""
+    with _whole(path, "wb") as file:
+        yield file
+
+
+@contextmanager
+def _whole(path: str | os.PathLike[str], mode: str, **text: Any) -> Iterator[IO[Any]]:
     place = Path(path)
     try:
         if place.exists() and not place.is_file():  # a device or a pipe cannot be renamed to
-            with place.open("w", encoding="utf-8", newline="") as file:
+            with place.open(mode, **text) as file:
                 yield file
             return
         handle, name = tempfile.mkstemp(prefix=f".{place.name}.", dir=place.parent)
         try:
-            with os.fdopen(handle, "w", encoding="utf-8", errors="surrogateescape", newline="") as file:
+            with os.fdopen(handle, mode, **text) as file:
                 yield file
                 file.flush()
                 os.fsync(file.fileno())

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from logtool.records.sources import Source, Text, shown
+from logtool.suggest.doubts import Doubt
 
 FIRST_BYTES = 1 << 18  # looked at from the start; our choice, as the following
 LATER_BYTES = 1 << 16  # from the middle and from the end
@@ -42,7 +43,7 @@ class Look:
         The sample, blank lines left out.
     trouble : str
         Why this is no text that could be a log; empty where it may be one.
-    doubts : tuple of str
+    doubts : tuple of Doubt
         What is not sure about the encoding.
     whole : bool
         Whether the sample is all of the file.
@@ -52,7 +53,7 @@ class Look:
     encoding: str
     lines: tuple[Line, ...]
     trouble: str = ""
-    doubts: tuple[str, ...] = ()
+    doubts: tuple[Doubt, ...] = ()
     whole: bool = True
 
 
@@ -77,7 +78,7 @@ def look_at(path: str | os.PathLike[str]) -> Look:
     for k, raw in enumerate(parts):
         lines += _lines_of(raw, encoding, k, last=whole and k == len(parts) - 1)
     if sum("\r" in line.text for line in lines) > len(lines) / 2:
-        doubts = (*doubts, "lines: they end at a carriage return alone, which ends no line here; convert the file first")
+        doubts = (*doubts, Doubt("lines", "they end at a carriage return alone, which ends no line here; convert the file first"))
     texts = "".join(line.text for line in lines)
     if sum(ord(c) in _CONTROLS for c in texts) > CONTROL_SHARE * len(texts):
         return Look(name, encoding, (), "it holds many control characters, so it is no text")
@@ -104,12 +105,12 @@ def _packed_parts(source: Source) -> tuple[list[bytes], bool]:
         if not blocks:
             first = block
         last, blocks = block, blocks + 1
-    if blocks < 2:  # noqa: PLR2004
+    if blocks < 2:
         return [first], True
     return [first[:FIRST_BYTES], last[-(LATER_BYTES // 2) * 2 :]], False
 
 
-def _encoding_of(parts: list[bytes]) -> tuple[str, tuple[str, ...]]:
+def _encoding_of(parts: list[bytes]) -> tuple[str, tuple[Doubt, ...]]:
     """Return the encoding (empty where this is no text) and the doubts about it."""
     first = parts[0]
     if first.startswith((b"\xff\xfe", b"\xfe\xff")):
@@ -118,7 +119,7 @@ def _encoding_of(parts: list[bytes]) -> tuple[str, tuple[str, ...]]:
     if joined.count(0) > NUL_SHARE * len(joined):
         for encoding, byte in (("utf-16-le", 1), ("utf-16-be", 0)):
             if first[byte::2].count(0) > 2 * NUL_SHARE * len(first[byte::2]) and not first[1 - byte :: 2].count(0):
-                return encoding, (f"encoding: every second byte is zero and there is no byte order mark; read as {encoding}",)
+                return encoding, (Doubt("encoding", f"every second byte is zero and there is no byte order mark; read as {encoding}"),)
         return "", ()
     if b"\0" in joined:
         return "", ()
@@ -137,7 +138,7 @@ def _encoding_of(parts: list[bytes]) -> tuple[str, tuple[str, ...]]:
     return _single_byte(joined, bad, other, example)
 
 
-def _single_byte(joined: bytes, bad: int, other: int, example: bytes) -> tuple[str, tuple[str, ...]]:
+def _single_byte(joined: bytes, bad: int, other: int, example: bytes) -> tuple[str, tuple[Doubt, ...]]:
     try:
         joined.decode("cp1252")
         encoding = "cp1252"
@@ -145,8 +146,11 @@ def _single_byte(joined: bytes, bad: int, other: int, example: bytes) -> tuple[s
         encoding = "latin-1"
     shown_line = example.decode("latin-1").strip()[:60]
     return encoding, (
-        f"encoding: {bad} of {other} lines with other characters than ASCII are no UTF-8; read as {encoding}, which"
-        f" may show such characters wrongly, as in {shown_line!r}",
+        Doubt(
+            "encoding",
+            f"{bad} of {other} lines with other characters than ASCII are no UTF-8; read as {encoding}, which may show"
+            f" such characters wrongly, as in {shown_line!r}",
+        ),
     )
 
 

@@ -186,7 +186,7 @@ def _rest_is_text(cut: list[list[str]], telling: list[int], count: int) -> bool:
 
 def _header_rows(lines: list[str], cut: list[list[str]], rows: list[int]) -> list[int]:
     """Return the rows that name the columns: words where other rows have times and numbers."""
-    if len(rows) < 2:  # noqa: PLR2004
+    if len(rows) < 2:
         return []
     first = next((i for i in rows if _is_names(cut[i])), None)
     if first is None:

@@ -9,7 +9,8 @@ from dataclasses import dataclass, field
 from functools import lru_cache
 from typing import Protocol
 
-from logtool.suggest.timeforms import shared_forms
+from logtool.suggest.doubts import Doubt
+from logtool.suggest.timeforms import forms_of, shared_forms
 from logtool.suggest.values import (
     CALLING_WORDS,
     ENOUGH,
@@ -25,6 +26,7 @@ from logtool.suggest.values import (
 TYPED = ("time", "number", "call", "locator", "word")
 _SPLIT = re.compile(r"[\s,;|\"'=:()\[\]{}]+")
 _DIGITS_ONLY = re.compile(r"[0-9.]+")
+FEW_LOCATORS = 3  # so few different words in many lines are rather modes that look like locators; our choice
 _SEEN = 300  # values by which a column's kind is found
 
 
@@ -44,6 +46,7 @@ class Column:
     values: list[str]
     hint: str = ""  # the log's own name for it
     unit: str = ""  # a unit that stands beside the values
+    literal: bool = False  # one word of prose, always the same
 
     @property
     def kind(self) -> str:
@@ -60,7 +63,7 @@ class Table:
     rows: list[int]
     where: dict[int, str] = field(default_factory=dict)  # column to a pattern that makes a line of this kind
     strict: bool = False  # other lines look alike, so the rule has to say how the pieces look
-    doubts: list[str] = field(default_factory=list)
+    doubts: list[Doubt] = field(default_factory=list)
     header_rows: list[int] = field(default_factory=list)
 
     def keep(self, wanted: list[bool]) -> None:
@@ -84,8 +87,8 @@ def kind_of(values: tuple[str, ...]) -> str:
     if most_are(values, is_number):
         return "number"
     different = len(set(values))
-    if most_are(values, is_locator) and different > 1:
-        return "locator"
+    if most_are(values, is_locator):
+        return "word" if different <= max(1, min(FEW_LOCATORS, len(values) // 20)) else "locator"
     if most_are(values, is_call):
         return "call"
     if most_are(values, lambda value: is_call(value) or value in CALLING_WORDS) and any(map(is_call, values)):
@@ -118,8 +121,6 @@ def without_wrong_times(table: Table) -> None:
     for column in table.columns:
         if column.kind == "time":
             forms = shared_forms(given(column.values))
-            from logtool.suggest.timeforms import forms_of
-
             wanted = [not value or bool(set(forms_of(value)) & set(forms)) for value in column.values]
             if not all(wanted) and sum(wanted) >= 0.5 * len(wanted):
                 table.keep(wanted)
@@ -138,7 +139,7 @@ def split_by_word(table: Table, lines: list[str]) -> None:
         other = {word for word in counted if not with_calls[word]}
         if not heard or not other or heard | other != set(counted):
             continue
-        if _differ(table, column, heard) < 2:  # noqa: PLR2004
+        if _differ(table, column, heard) < 2:
             continue
         table.where[k] = "|".join(re.escape(word) for word in sorted(heard))
         table.keep([value in heard for value in column.values])
@@ -161,7 +162,7 @@ def score(table: Table, total: int) -> float:
     """Return how well a table explains a sample: typed columns, weighed by its share of the lines."""
     if not table.rows:
         return 0.0
-    points = sum(1.0 if column.kind in TYPED else 0.6 if column.kind == "text" else 0.0 for column in table.columns)
+    points = sum(0.0 if column.literal else 1.0 if column.kind in TYPED else 0.6 if column.kind == "text" else 0.0 for column in table.columns)
     whole = len({value for column in table.columns for value in column.values}) > 1
     return points * (len(table.rows) / total) ** 0.5 if whole else 0.0
 

@@ -115,7 +115,7 @@ def _whole_forms(value: str) -> list[str]:
         sign = re.match(_SIGNS, rest)
         assert sign is not None  # it may be empty
         for form, left in _time_starts(rest[sign.end() :]):
-            if not left and (sign[0] or not date[-2:].isdigit()):
+            if not left and (has_year(date) or " " in sign[0]):
                 found.append(date + re.sub(" +", " ", sign[0]) + form)
     for form, rest in times:
         sign = re.match(r"( +|, ?|_|/)", rest)

@@ -19,6 +19,7 @@ if TYPE_CHECKING:
 
 
 MOST_NAMED = 20  # names that a note lists; our choice
+_NOTHING_HIDDEN = Privacy()
 
 
 def make_chosen(logs: Logs, choice: Choice) -> tuple[duckdb.DuckDBPyConnection, list[str]]:
@@ -67,7 +68,7 @@ def conditions(choice: Choice, *, of_receptions: bool, also_off: bool = False) -
 
 
 def unknown_words(
-    connection: duckdb.DuckDBPyConnection, choice: Choice, privacy: Privacy = Privacy()
+    connection: duckdb.DuckDBPyConnection, choice: Choice, privacy: Privacy = _NOTHING_HIDDEN
 ) -> list[str]:
     """Return a note for each chosen word that the inputs do not have, with those they have.
 

@@ -38,7 +38,9 @@ RECORD_COLUMNS = LAYOUT_COLUMNS | DERIVED_COLUMNS
 """Each column of an export with the kind of its values; see `logtool.records.arrow.schema_of`."""
 
 
-def records_query(logs: Logs, choice: Choice, columns: Sequence[str] = tuple(RECORD_COLUMNS)) -> str:
+def records_query(
+    logs: Logs, choice: Choice, columns: Sequence[str] = tuple(RECORD_COLUMNS), *, with_setups: bool = False
+) -> str:
     """Return the SQL query of all records that a choice counts, each once, in order of time, then of bytes.
 
     Times are in microseconds since 1970. A choice by sender or mode leaves receptions only. Records of other
@@ -54,44 +56,17 @@ def records_query(logs: Logs, choice: Choice, columns: Sequence[str] = tuple(REC
         Which records.
     columns : sequence of str
         Names of `RECORD_COLUMNS`, distances rounded for output, and `raw` (the line), `f` (the fields as written,
-        from 1) and `kind`.
+        from 1).
+    with_setups : bool
+        Also a line for each setup that no line states: one made from what a recipe or another format says of the
+        receiver's place.
     """
     records = _with_places(logs, receptions_sql(logs, choice, also_off=True), rounded=True)
     if not choice.senders and not choice.modes:
         nothing = ", ".join(f"NULL AS {name}" for name in DERIVED_COLUMNS)
-        records = f"(FROM {records} UNION ALL BY NAME SELECT raw, f, time_us, {nothing} FROM {_others(logs, choice)})"
+        others = f"SELECT raw, f, time_us, {nothing} FROM {_others(logs, choice, with_setups)}"
+        records = f"(FROM {records} UNION ALL BY NAME {others})"
     return _query(logs, records, columns)
-
-
-def setups_beside(logs: Logs) -> list[str]:
-    """Return a line of the layout for each setup that no line of the logs states, in order of time.
-
-    Other formats than the layout say where a receiver stands in their own ways.
-    """
-    logs.tally()
-    stated = set()
-    for (line,) in logs.connection.execute(
-        f"SELECT line FROM odd_records WHERE {SPLIT}[2] = 'setup'"
-    ).fetchall():
-        record = judge(line.encode())
-        assert isinstance(record, Record)
-        stated.add(
-            (record.field("receiver"), record.time_us, record.field("locator"), record.keys["antenna"])
-        )
-    lines = []
-    for setup in (setup for setups in logs.setups.values() for setup in setups):
-        if (setup.receiver, setup.time_us, setup.locator, setup.antenna) in stated:
-            continue
-        fields = {
-            "time": written_time(setup.time_us),
-            "kind": "setup",
-            "receiver": setup.receiver,
-            "dial_hz": str(setup.dial_hz),
-            "locator": logs.privacy.locator(setup.locator),
-            "more": f"antenna={setup.antenna}",
-        }
-        lines.append("\t".join(fields.get(name, "") for name in COLUMN_NAMES))
-    return sorted(lines)
 
 
 def _query(logs: Logs, records: str, columns: Sequence[str]) -> str:
@@ -122,13 +97,17 @@ def _with_places(logs: Logs, receptions: str, *, rounded: bool) -> str:
         FROM {receptions} LEFT JOIN sender_hour USING (sender, hour) LEFT JOIN {pairs} USING (place, locator))"""
 
 
-def _others(logs: Logs, choice: Choice) -> str:
+def _others(logs: Logs, choice: Choice, with_setups: bool) -> str:
     """Return the SQL of a relation of raw, f and time_us of the records that are no receptions."""
     connection = make_rollup(logs, choice)
+    lines = "odd_records"
+    if with_setups:
+        create_table(connection, "setup_beside", {"line": "VARCHAR"}, [_setups_beside(logs)])
+        lines = "(SELECT line FROM odd_records UNION ALL FROM setup_beside)"
     placed = f"""(
         SELECT raw, f, time_us, time_us AS start_us, name AS receiver, antenna, band, lon_deg,
             time_us // {HOUR_US} AS hour
-        FROM (SELECT *, {FIELD["receiver"]} AS receiver FROM {fields_sql("odd_records")}) AS record
+        FROM (SELECT *, {FIELD["receiver"]} AS receiver FROM {fields_sql(lines)}) AS record
             ASOF JOIN station ON record.receiver = station.receiver AND time_us >= since_us
             LEFT JOIN dial_band ON {FIELD["dial_hz"]} = dial_band.dial_hz)"""
     where = conditions(replace(choice, bands=()), of_receptions=False, also_off=True)
@@ -140,6 +119,33 @@ def _others(logs: Logs, choice: Choice) -> str:
             SELECT placed.*, night FROM {placed} AS placed JOIN record_night
                 ON placed.hour = record_night.hour AND placed.lon_deg IS NOT DISTINCT FROM record_night.lon_deg)"""
     return f"(SELECT raw, f, time_us FROM {placed} WHERE {' AND '.join(where)})"
+
+
+def _setups_beside(logs: Logs) -> list[str]:
+    """Return a line of the layout for each setup that no line of the logs states."""
+    stated = set()
+    for (line,) in logs.connection.execute(
+        f"SELECT line FROM odd_records WHERE {SPLIT}[2] = 'setup'"
+    ).fetchall():
+        record = judge(line.encode())
+        assert isinstance(record, Record)
+        stated.add(
+            (record.field("receiver"), record.time_us, record.field("locator"), record.keys["antenna"])
+        )
+    lines = []
+    for setup in (setup for setups in logs.setups.values() for setup in setups):
+        if (setup.receiver, setup.time_us, setup.locator, setup.antenna) in stated:
+            continue
+        fields = {
+            "time": written_time(setup.time_us),
+            "kind": "setup",
+            "receiver": setup.receiver,
+            "dial_hz": str(setup.dial_hz),
+            "locator": setup.locator,
+            "more": f"antenna={setup.antenna}",
+        }
+        lines.append("\t".join(fields.get(name, "") for name in COLUMN_NAMES))
+    return lines
 
 
 def receptions(logs: Logs, **words: Any) -> pd.DataFrame:
@@ -167,9 +173,9 @@ def receptions(logs: Logs, **words: Any) -> pd.DataFrame:
     UsageError
         Where a word cannot be used.
     """
-    from logtool.records.arrow import batches, schema_of
-
     import pyarrow as pa
+
+    from logtool.records.arrow import batches, schema_of
 
     choice = choose(**words)
     records = _with_places(logs, receptions_sql(logs, choice), rounded=False)

@@ -13,8 +13,8 @@ _UTF16_MARKS = (codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE)
 _MARK_BYTES = 2
 
 
-def blocks_of(text: Text, encoding: str) -> Iterator[bytes]:
-    """Give the text of whole lines in blocks of about `JOINED_BYTES`; as UTF-8 unless it is said to be that.
+def blocks_of(text: Text, encoding: str, *, joined_bytes: int = JOINED_BYTES) -> Iterator[bytes]:
+    """Give the text of whole lines in blocks of at least `joined_bytes`; as UTF-8 unless it is said to be that.
 
     What is not of the encoding becomes U+FFFD; a text that is said to be UTF-8 is given as it is. A UTF-16 file
     with a byte order mark is recognised whatever is said.
@@ -24,7 +24,7 @@ def blocks_of(text: Text, encoding: str) -> Iterator[bytes]:
     for block in whole_lines(_recoded(text, encoding), text.source.name):
         waiting.append(block)
         size += len(block)
-        if size >= JOINED_BYTES:
+        if size >= joined_bytes:
             yield b"".join(waiting)
             waiting, size = [], 0
     if waiting:

@@ -2,21 +2,19 @@
 
 from __future__ import annotations
 
-import csv
 from collections import Counter
 from collections.abc import Iterator
 from dataclasses import dataclass
-from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 
-from logtool.records.quick import sql_text
-from logtool.records.recipes.blocks import blocks_of
-from logtool.records.recipes.cutting import HEADER, NONE, SKIPPED, parsed_sql, targets_of
+from logtool.records.recipes.cutting import BLANK, HEADER, REASON_OF, SKIPPED, parsed_sql, targets_of
+from logtool.records.recipes.file_facts import header_of, named_values
 from logtool.records.recipes.making import carried_targets, carrying, guarded_sql, made_sql, said_sql
-from logtool.records.recipes.patterns import groups_of
-from logtool.records.recipes.recipe import HEADER_RULE, NO_RULE, Recipe, RecipeError
+from logtool.records.recipes.prepared import Prepared, prepared_blocks
+from logtool.records.recipes.recipe import HEADER_RULE, Recipe
+from logtool.records.recipes.steps import Steps
 from logtool.records.recipes.times import NO_TIME, FileClock
 from logtool.records.recipes.values import column, constant_value
 
@@ -26,9 +24,7 @@ if TYPE_CHECKING:
 
     from logtool.records.sources import Text
 
-_LF, _TAB, _CR, _DELETE, _C1_LEAD = b"\n\t\r\x7f\xc2"
-_MIDNIGHT_FORM = "%Y-%m-%d"
-_SKIP_RULE = "skip"  # what the ledger calls lines that a pattern of `skip` passes over
+_PASSED_OVER = {SKIPPED: "skip", HEADER: HEADER_RULE}  # what the ledger calls lines that are no record
 
 
 @dataclass
@@ -63,13 +59,14 @@ class Converter:
         self._connection = connection
         self._file_name = file_name
         self._constants = dict(constant_value(name, value) for name, value in recipe.constants.items())
-        named_day_us = self._read_name()
+        named, named_day_us = named_values(connection, recipe, file_name)
+        self._constants |= named
         self._clock = FileClock(recipe.zone, day_us if named_day_us is None else named_day_us)
         self._headers: dict[int, list[str]] = {}
         self._header_line: str | None = None
         self._own = targets_of(recipe)
         self._carried: dict[str, str | None] = dict.fromkeys(carried_targets(recipe))
-        self._last_step: tuple[int, dict[str, int]] | None = None  # its time, and how often each line came in it
+        self._steps = Steps(connection)
         self._lines = 0
         connection.execute("SET TimeZone = 'UTC'")
         connection.execute("SET preserve_insertion_order = true")
@@ -96,25 +93,29 @@ class Converter:
             )
         if told.skipped:
             notes.append(
-                f"{told.skipped} lines have a time that the clock of {self.recipe.zone} never showed: is the zone right?"
+                f"{told.skipped} lines have a time that the clock of {self.recipe.zone} never showed; "
+                "is the zone right?"
             )
         return notes
 
     def blocks(self, text: Text) -> Iterator[tuple[bytes, Made]]:
         """Give the lines of a text (as UTF-8) and the made lines, block by block."""
-        for block in blocks_of(text, self.recipe.encoding):
-            yield block, self.make(block)
+        for prepared in prepared_blocks(text, self.recipe.encoding):
+            yield prepared.block, self.make(prepared)
 
-    def make(self, block: bytes) -> Made:
-        """Return the made lines of a block of whole lines in UTF-8."""
-        values = np.frombuffer(block, np.uint8)
-        ends = np.flatnonzero(values == _LF) + 1
-        if not len(ends) or ends[-1] != len(block):
-            ends = np.append(ends, len(block))
-        lines = len(ends)
+    def make(self, prepared: Prepared) -> Made:
+        """Return the made lines of a block."""
         if self._lines == 0:
-            self._read_header(block)
-        has_control = self._register(block, ends, values)
+            self._header_line, self._headers = header_of(
+                self._connection, self.recipe, prepared.block, self._file_name
+            )
+        self._connection.register("raw_block", prepared.table)
+        line = "rtrim(raw, chr(10))"
+        if prepared.has_return:
+            line = f"CASE WHEN ends_with(raw, chr(13) || chr(10)) THEN raw[:-3] ELSE {line} END"
+        self._connection.execute(
+            f"CREATE OR REPLACE TEMP VIEW block AS SELECT i, {line} AS line, bad FROM raw_block"
+        )
         self._connection.execute(
             f"CREATE OR REPLACE TEMP TABLE parsed AS {parsed_sql(self.recipe, self._headers, self._header_line)}"
         )
@@ -126,57 +127,16 @@ class Converter:
             self._make_carried(target)
         made = made_sql(self.recipe, self._own, self._constants, has_said=has_said)
         self._connection.execute(
-            f"CREATE OR REPLACE TEMP TABLE made AS {guarded_sql(made, has_control=has_control)}"
+            f"CREATE OR REPLACE TEMP TABLE made AS {guarded_sql(made, has_control=prepared.has_control)}"
         )
         self._note_earliest()
         if self.recipe.time_step_s:
-            self._tell_apart()
+            self._steps.tell_apart()
         table = self._connection.sql("SELECT rule, out FROM made ORDER BY i").to_arrow_table()
         rules = table.column("rule").to_numpy()
         self._count(rules)
-        self._lines += lines
+        self._lines += prepared.lines
         return Made(table.column("out"), rules)
-
-    def _register(self, block: bytes, ends: np.ndarray, values: np.ndarray) -> bool:
-        """Make the relation `block` of i, line and bad (its encoding); return whether it has control characters."""
-        import pyarrow as pa
-
-        bad = np.zeros(len(ends), bool)
-        starts = np.concatenate(([0], ends[:-1]))
-        wrong = self._wrong_lines(block, starts, ends)
-        if len(wrong):
-            bad[wrong] = True
-            pieces = [block[a:b] for a, b in zip(starts.tolist(), ends.tolist(), strict=True)]
-            for i in wrong.tolist():
-                pieces[i] = b"?\n"
-            block = b"".join(pieces)
-            ends = np.cumsum([len(piece) for piece in pieces])
-            values = np.frombuffer(block, np.uint8)
-        offsets = np.concatenate(([0], ends)).astype(np.int32)
-        lines = pa.StringArray.from_buffers(len(ends), pa.py_buffer(offsets), pa.py_buffer(block))
-        raw = pa.table({"i": np.arange(len(ends), dtype=np.int64), "raw": lines, "bad": bad})
-        self._connection.register("raw_block", raw)
-        line = "rtrim(raw, chr(10))"
-        has_return = bool((values == _CR).any())
-        if has_return:
-            line = f"CASE WHEN ends_with(raw, chr(13) || chr(10)) THEN raw[:-3] ELSE {line} END"
-        self._connection.execute(
-            f"CREATE OR REPLACE TEMP VIEW block AS SELECT i, {line} AS line, bad FROM raw_block"
-        )
-        controls = (values < ord(" ")) & (values != _LF) & (values != _TAB) & (values != _CR)
-        return bool(has_return or controls.any() or ((values == _DELETE) | (values == _C1_LEAD)).any())
-
-    def _wrong_lines(self, block: bytes, starts: np.ndarray, ends: np.ndarray) -> np.ndarray:
-        """Return which lines are not of the encoding."""
-        bounds = enumerate(zip(starts.tolist(), ends.tolist(), strict=True))
-        if self.recipe.encoding == "utf-8":
-            if _is_utf8(block):
-                return np.zeros(0, np.int64)
-            return np.array([i for i, (a, b) in bounds if not _is_utf8(block[a:b])], np.int64)
-        replaced = "\ufffd".encode()
-        if replaced not in block:
-            return np.zeros(0, np.int64)
-        return np.array([i for i, (a, b) in bounds if replaced in block[a:b]], np.int64)
 
     def _make_timed(self) -> None:
         """Make the relation `timed` of i and time_us (UTC) for all lines whose time is known."""
@@ -215,121 +175,11 @@ class Converter:
             if receiver not in self.earliest or time_us < self.earliest[receiver][0]:
                 self.earliest[receiver] = (time_us, dial_hz)
 
-    def _tell_apart(self) -> None:
-        """Number equal lines within one step of the text's times, so that none counts as repeated."""
-        self._connection.execute("""
-            CREATE OR REPLACE TEMP TABLE stepped AS
-            SELECT i, out, time_us, sum(new) OVER (ORDER BY i ROWS UNBOUNDED PRECEDING) AS step FROM (
-                SELECT i, out, time_us, (time_us IS DISTINCT FROM lag(time_us) OVER (ORDER BY i))::INTEGER AS new
-                FROM made WHERE time_us IS NOT NULL AND out NOT LIKE '!%')""")
-        before, counts = self._last_step or (None, {})
-        self._connection.execute("CREATE OR REPLACE TEMP TABLE before (out VARCHAR, n BIGINT)")
-        first = self._connection.execute("SELECT arg_min(time_us, i), max(step) FROM stepped").fetchone()
-        assert first is not None
-        if first[1] is None:
-            return
-        if before == first[0] and counts:
-            self._connection.execute(
-                "INSERT INTO before SELECT unnest(?::VARCHAR[]), unnest(?::BIGINT[])",
-                [list(counts), list(counts.values())],
-            )
-        self._connection.execute("""
-            CREATE OR REPLACE TEMP TABLE numbered AS
-            SELECT stepped.i, stepped.out, time_us, step,
-                row_number() OVER (PARTITION BY step, stepped.out ORDER BY stepped.i)
-                    + CASE WHEN step = 1 THEN coalesce(before.n, 0) ELSE 0 END AS nth
-            FROM stepped LEFT JOIN before ON stepped.out = before.out""")
-        rows = self._connection.execute(
-            "SELECT out, max(nth), any_value(time_us) FROM numbered WHERE step = ? GROUP BY out", [first[1]]
-        ).fetchall()
-        kept = counts if first[1] == 1 and before == first[0] else {}
-        self._last_step = rows[0][2], {**kept, **{out: nth for out, nth, _ in rows}}
-        self._connection.execute("""
-            UPDATE made SET out = made.out || CASE WHEN ends_with(made.out, chr(9)) THEN '' ELSE '; ' END
-                || 'nth=' || nth
-            FROM numbered WHERE made.i = numbered.i AND nth > 1""")
-
     def _count(self, rules: np.ndarray) -> None:
-        names = {NONE: NO_RULE, SKIPPED: _SKIP_RULE, HEADER: HEADER_RULE}
-        names.update({k: rule.name for k, rule in enumerate(self.recipe.rules)})
         for code, count in zip(*np.unique(rules, return_counts=True), strict=True):
-            if int(code) in names:
-                self.counts[names[int(code)]] += int(count)
+            if int(code) != BLANK:
+                self.counts[self.rule_name(int(code)) or REASON_OF[int(code)]] += int(count)
 
-    def _read_name(self) -> int | None:
-        """Take the values that the file's name gives; return the date among them."""
-        pattern = self.recipe.name_pattern
-        if pattern is None:
-            return None
-        groups = groups_of(pattern)
-        listed = ", ".join(sql_text(group or f"_{i}") for i, group in enumerate(["whole_name", *groups]))
-        row = self._connection.execute(
-            f"SELECT regexp_extract(?, ?, [{listed}])", [Path(self._file_name).name, f"({pattern})"]
-        ).fetchone()
-        assert row is not None
-        found: dict[str, Any] = row[0]
-        if not found["whole_name"]:
-            raise RecipeError(
-                f"{self._file_name}: its name does not match `name.pattern` of {self.recipe.name} ({pattern!r}); "
-                "rename the file or mend the pattern"
-            )
-        day_us = None
-        for piece in filter(None, groups):
-            if piece == "date":
-                day_us = day_of(self._connection, found[piece], self.recipe.name_date_form or _MIDNIGHT_FORM)
-                if day_us is None:
-                    raise RecipeError(
-                        f"{self._file_name}: {found[piece]!r} in its name is no date of the form "
-                        f"{self.recipe.name_date_form!r} (`name.date_form` of {self.recipe.name})"
-                    )
-            elif found[piece]:
-                target, value = constant_value(piece, self.recipe.values.get(piece, {}).get(found[piece], found[piece]))
-                self._constants[target] = value
-        return day_us
-
-    def _read_header(self, block: bytes) -> None:
-        """Find the columns that the file's first line names, for the rules that want it."""
-        wanted = {k: rule for k, rule in enumerate(self.recipe.rules) if rule.form.header is not None}
-        if not wanted:
-            return
-        for raw in block.split(b"\n"):
-            line = raw.removesuffix(b"\r").decode("utf-8", "replace")
-            if line.strip() and not any(_is_found(self._connection, pattern, line) for pattern in self.recipe.skip):
-                break
-        self._header_line = line
-        for k, rule in wanted.items():
-            assert rule.form.header is not None and rule.form.separator is not None
-            names = [name.strip() for name in next(csv.reader([line], delimiter=rule.form.separator), [])]
-            piece_of = {name: piece for piece, name in rule.form.header.items()}
-            for name, piece in piece_of.items():
-                if names.count(name) != 1:
-                    raise RecipeError(
-                        f"{self._file_name}, line 1: `columns.{piece}` of {self.recipe.name} wants a column {name!r}, and the "
-                        f"header has {'several' if name in names else 'none'}: {', '.join(names)[:300]}"
-                    )
-            self._headers[k] = [piece_of.get(name, "") for name in names]
-
-
-def day_of(connection: duckdb.DuckDBPyConnection, written: str, form: str) -> int | None:
-    """Return the midnight of a written date in microseconds since 1970, or None where it is not of the form."""
-    from logtool.records.recipes.timeforms import date_sql
-
-    row = connection.execute(f"SELECT {date_sql(sql_text(written), form)}").fetchone()
-    assert row is not None
-    day_us: int | None = row[0]
-    return day_us
-
-
-def _is_utf8(block: bytes) -> bool:
-    if block.isascii():
-        return True
-    try:
-        block.decode()
-    except UnicodeDecodeError:
-        return False
-    return True
-
-
-def _is_found(connection: duckdb.DuckDBPyConnection, pattern: str, line: str) -> bool:
-    row = connection.execute("SELECT regexp_matches(?, ?)", [line, pattern]).fetchone()
-    return bool(row and row[0])
+    def rule_name(self, code: int) -> str:
+        """Return what the ledger calls lines with this code of `cutting`; empty where they are of no rule."""
+        return self.recipe.rules[code].name if code >= 0 else _PASSED_OVER.get(code, "")

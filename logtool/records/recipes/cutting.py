@@ -5,12 +5,21 @@ from __future__ import annotations
 from logtool.records.quick import sql_text
 from logtool.records.recipes.names import target_of
 from logtool.records.recipes.patterns import groups_of
-from logtool.records.recipes.recipe import SPACE, Recipe, Rule
+from logtool.records.recipes.recipe import BAD_ENCODING, NO_RULE, SPACE, Recipe, Rule
 from logtool.records.recipes.timeforms import date_sql, time_sql
-from logtool.records.recipes.values import BLANKS, CALLS, assisted_sql, cleaned_sql, column, value_sql
+from logtool.records.recipes.values import (
+    BLANKS,
+    CALLS,
+    assisted_sql,
+    cleaned_sql,
+    column,
+    is_blank_sql,
+    value_sql,
+)
 
 # What a line is where it is none of the rules, which count from 0.
 BLANK, NONE, ENCODING, SKIPPED, HEADER = -1, -2, -3, -4, -5
+REASON_OF = {NONE: NO_RULE, ENCODING: BAD_ENCODING}
 NO_COLUMN = "''"  # SQL for a piece whose column this file does not have
 _ASSISTED = "assisted"
 _ANY_BLANKS = r"[ \t]+"
@@ -37,28 +46,40 @@ def parsed_sql(recipe: Recipe, headers: dict[int, list[str]], header_line: str |
     header_line : str, optional
         That header, to be told from the other lines.
     """
-    first = [f"WHEN trim(line, {BLANKS}) = '' THEN {BLANK}", f"WHEN bad THEN {ENCODING}"]
+    first = [f"WHEN {is_blank_sql('line')} THEN {BLANK}", f"WHEN bad THEN {ENCODING}"]
     if header_line is not None:
         first.append(f"WHEN line = {sql_text(header_line)} THEN {HEADER}")
     first += [f"WHEN regexp_matches(line, {sql_text(pattern)}) THEN {SKIPPED}" for pattern in recipe.skip]
     relation = f"SELECT i, line, (CASE {' '.join(first)} END)::INTEGER AS rule FROM block"
-    for k, rule in enumerate(recipe.rules):
-        cut = _Cut(rule, f"m{k}", headers.get(k))
+    cuts = [_Cut(rule, f"m{k}", headers.get(k)) for k, rule in enumerate(recipe.rules)]
+    for k, (rule, cut) in enumerate(zip(recipe.rules, cuts, strict=True)):
         relation = f"SELECT *, CASE WHEN rule IS NULL THEN {cut.sql} END AS m{k} FROM ({relation})"
         holds = " AND ".join([cut.holds, *_conditions(rule, cut, recipe)])
         relation = f"""SELECT * REPLACE (
             CASE WHEN rule IS NULL AND coalesce({holds}, false) THEN {k} ELSE rule END AS rule) FROM ({relation})"""
-    cuts = [_Cut(rule, f"m{k}", headers.get(k)) for k, rule in enumerate(recipe.rules)]
-    columns = ["i", f"coalesce(rule, {NONE}) AS rule"]
-    times = [_time_of(rule, cut, recipe) for rule, cut in zip(recipe.rules, cuts, strict=True)]
-    columns.append(f"{_by_rule([time for time, _ in times], 'BIGINT')} AS stamp_us")
-    columns.append(f"{_by_rule([lacking for _, lacking in times], 'INTEGER')} AS lacking")
-    days = [_day_of(rule, cut, recipe) for rule, cut in zip(recipe.rules, cuts, strict=True)]
-    columns.append(f"{_by_rule(days, 'BIGINT')} AS day_us")
+    pieces = [
+        f"{cleaned_sql(cut.piece(piece), piece, recipe)} AS {_cleaned(k, piece)}"
+        for k, (rule, cut) in enumerate(zip(recipe.rules, cuts, strict=True))
+        for piece in rule.pieces
+    ]
+    relation = f"SELECT {', '.join(['i', f'coalesce(rule, {NONE}) AS rule', *pieces])} FROM ({relation})"
+    times = [_time_of(k, rule) for k, rule in enumerate(recipe.rules)]
+    columns = [
+        "i",
+        "rule",
+        f"{_by_rule([time for time, _ in times], 'BIGINT')} AS stamp_us",
+        f"{_by_rule([lacking for _, lacking in times], 'INTEGER')} AS lacking",
+        f"{_by_rule([_day_of(k, rule) for k, rule in enumerate(recipe.rules)], 'BIGINT')} AS day_us",
+    ]
     for target in targets_of(recipe):
-        values = [_value_of(target, rule, cut, recipe) for rule, cut in zip(recipe.rules, cuts, strict=True)]
+        values = [_value_of(target, k, rule, recipe) for k, rule in enumerate(recipe.rules)]
         columns.append(f"{_by_rule(values, 'VARCHAR')} AS {column(target)}")
     return f"SELECT {', '.join(columns)} FROM ({relation})"
+
+
+def _cleaned(k: int, piece: str) -> str:
+    """Return the name of the column of a rule's cleaned piece."""
+    return column(f"p{k}_{piece}")
 
 
 class _Cut:
@@ -82,7 +103,9 @@ class _Cut:
                 piece: f"substring(line, {first}" + (f", {last - first + 1})" if last else ")")
                 for piece, (first, last) in form.fixed.items()
             }
-            self.sql = f"struct_pack({', '.join(f'{column(piece)} := {span}' for piece, span in spans.items())})"
+            self.sql = (
+                f"struct_pack({', '.join(f'{column(piece)} := {span}' for piece, span in spans.items())})"
+            )
             self.holds = f"{name} IS NOT NULL"
             self._raw = {piece: f"{name}.{column(piece)}" for piece in spans}
         else:
@@ -129,7 +152,9 @@ def _conditions(rule: Rule, cut: _Cut, recipe: Recipe) -> list[str]:
         for piece, pattern in rule.where.items()
     ]
     if rule.form.fixed and "time" in rule.pieces:
-        conditions.append(f"{_time_of(rule, cut, recipe)[0]} IS NOT NULL")
+        conditions.append(
+            f"{time_sql(cleaned_sql(cut.piece('time'), 'time', recipe), rule.time_form)[0]} IS NOT NULL"
+        )
     if rule.form.json and "time" in rule.pieces:
         conditions.append(f"{cut.piece('time')} IS NOT NULL")
     return conditions
@@ -140,28 +165,28 @@ def _by_rule(values: list[str | None], kind: str) -> str:
     return f"(CASE rule {cases} END)::{kind}" if cases else f"NULL::{kind}"
 
 
-def _time_of(rule: Rule, cut: _Cut, recipe: Recipe) -> tuple[str | None, str | None]:
+def _time_of(k: int, rule: Rule) -> tuple[str | None, str | None]:
     if "time" not in rule.pieces or not rule.is_record:
         return None, None
-    return time_sql(cleaned_sql(cut.piece("time"), "time", recipe), rule.time_form)
+    return time_sql(_cleaned(k, "time"), rule.time_form)
 
 
-def _day_of(rule: Rule, cut: _Cut, recipe: Recipe) -> str | None:
+def _day_of(k: int, rule: Rule) -> str | None:
     if "date" not in rule.pieces or rule.date_form is None:
         return None
-    return date_sql(cleaned_sql(cut.piece("date"), "date", recipe), rule.date_form)
+    return date_sql(_cleaned(k, "date"), rule.date_form)
 
 
-def _value_of(target: str, rule: Rule, cut: _Cut, recipe: Recipe) -> str | None:
-    values = []
-    for piece in rule.pieces:
-        if target_of(piece) == target:
-            values.append(value_sql(cleaned_sql(cut.piece(piece), piece, recipe), piece, recipe))
+def _value_of(target: str, k: int, rule: Rule, recipe: Recipe) -> str | None:
+    values = [
+        value_sql(_cleaned(k, piece), piece, recipe) for piece in rule.pieces if target_of(piece) == target
+    ]
     if target == _ASSISTED:
-        for call in CALLS:
-            if call in rule.pieces:
-                assisted = assisted_sql(cleaned_sql(cut.piece(call), call, recipe))
-                values.append(f"CASE WHEN {assisted} THEN '1' END")
+        values += [
+            f"CASE WHEN {assisted_sql(_cleaned(k, call))} THEN '1' END"
+            for call in CALLS
+            if call in rule.pieces
+        ]
     if not values:
         return None
     return values[0] if len(values) == 1 else f"coalesce({', '.join(values)})"

@@ -150,5 +150,9 @@ class Fields:
         for key in self._told:
             if key not in self._taken:
                 alike = difflib.get_close_matches(key, self._taken, n=1)
-                hint = f"; did you mean `{alike[0]}`?" if alike else f"; there are {', '.join(sorted(self._taken))}"
+                hint = (
+                    f"; did you mean `{alike[0]}`?"
+                    if alike
+                    else f"; there are {', '.join(sorted(self._taken))}"
+                )
                 raise self.error(key, f"there is no such key{hint}")

@@ -7,7 +7,6 @@ import os
 import re
 import tomllib
 from pathlib import Path
-from typing import Any
 
 from logtool.errors import FileError
 from logtool.records.layout import KEY_FORM, KINDS
@@ -78,7 +77,9 @@ def recipe_of(text: str, name: str) -> Recipe:
     keep = top.words("keep")
     for word in keep:
         if not re.fullmatch(KEY_FORM, word) or word in PIECES:
-            raise top.error("keep", f"{word!r} is no name for `more`: small letters, digits, _; not one in use")
+            raise top.error(
+                "keep", f"{word!r} is no name for `more`: small letters, digits, _; not one in use"
+            )
     rules = _rules(top, keep)
     named = top.table("name")
     name_pattern = named.pattern("pattern")
@@ -155,10 +156,14 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
     kind = fields.one_of("kind", (*KINDS, CARRY, SKIP), needed=True)
     name = fields.take("name", str, kind)
     if not re.fullmatch(_RULE_NAME, name) or name == HEADER_RULE:
-        raise fields.error("name", f"{name!r}: a rule's name has small letters, digits and -; not `{HEADER_RULE}`")
+        raise fields.error(
+            "name", f"{name!r}: a rule's name has small letters, digits and -; not `{HEADER_RULE}`"
+        )
     given = [way for way in _FORMS if way in fields]
     if len(given) != 1:
-        raise fields.error("kind", f"it needs one of {', '.join(_FORMS)}; it has {' and '.join(given) or 'none'}")
+        raise fields.error(
+            "kind", f"it needs one of {', '.join(_FORMS)}; it has {' and '.join(given) or 'none'}"
+        )
     form, pieces = _form(fields, given[0])
     twice = sorted({piece for piece in pieces if pieces.count(piece) > 1})
     if twice:
@@ -179,7 +184,9 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
     time_form = fields.time_form("time_form", "iso")
     date_form = fields.time_form("date_form", None)
     if "date" in wanted and date_form is None:
-        raise fields.error(given[0], "it has a piece `date`: say how it is written, like date_form = \"%Y-%m-%d\"")
+        raise fields.error(
+            given[0], 'it has a piece `date`: say how it is written, like date_form = "%Y-%m-%d"'
+        )
     if kind not in (CARRY, SKIP) and "time" not in wanted:
         raise fields.error(given[0], f"a line of the kind `{kind}` needs a piece `time`")
     constants = _constants(fields.table("constants"), keep)
@@ -205,7 +212,9 @@ def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
         raise fields.error("separator", f"{separator!r} cannot separate columns; write {SPACE!r} for blanks")
     if fields.take("header", bool, False):
         if separator == SPACE:
-            raise fields.error("header", "with blanks as separators the columns have to be named in `columns`")
+            raise fields.error(
+                "header", "with blanks as separators the columns have to be named in `columns`"
+            )
         header = fields.strings("columns")
         if not header:
             raise fields.error("columns", 'with header = true it is a table, like { time = "UTC" }')
@@ -246,7 +255,11 @@ def _constants(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
     constants = {}
     for name in list(fields):
         if name in ("locator", "time", "date", "text"):
-            hint = "the receiver's own locator is called `place`" if name == "locator" else "it belongs to a line"
+            hint = (
+                "the receiver's own locator is called `place`"
+                if name == "locator"
+                else "it belongs to a line"
+            )
             raise fields.error(name, f"{name!r} cannot be a constant: {hint}")
         _check_names(fields, name, [name], keep)
         value = fields.take(name, (str, int, float))
@@ -291,7 +304,7 @@ def _check_whole(top: Fields, recipe: Recipe) -> None:
     if recipe.name_pattern and "date" in groups_of(recipe.name_pattern) and recipe.name_date_form is None:
         raise top.error("name", 'the date in the file\'s name needs date_form, like date_form = "%Y%m%d"')
     if not any(rule.is_record for rule in recipe.rules):
-        raise top.error("line", "no [[line]] makes a record; one needs kind = \"heard\"")
+        raise top.error("line", 'no [[line]] makes a record; one needs kind = "heard"')
     for rule in recipe.rules:
         own = anywhere | {target_of(name) for name in (*rule.pieces, *rule.constants)}
         if rule.is_record and "receiver" not in own:
@@ -300,9 +313,12 @@ def _check_whole(top: Fields, recipe: Recipe) -> None:
             )
         if rule.kind in ("heard", "setup") and not own & {"dial_hz", "signal_hz"}:
             raise top.error(
-                "constants", f"no dial for lines {rule.name!r}: add dial_hz = ... (or dial_khz) to [constants]"
+                "constants",
+                f"no dial for lines {rule.name!r}: add dial_hz = ... (or dial_khz) to [constants]",
             )
         if rule.kind == "watch" and "on_s" not in own:
-            raise top.error("constants", f"lines {rule.name!r} need on_s: add constants = {{ on_s = 15 }} to it")
+            raise top.error(
+                "constants", f"lines {rule.name!r} need on_s: add constants = {{ on_s = 15 }} to it"
+            )
         if rule.kind == "noise" and "dbfs" not in own:
             raise top.error("constants", f"lines {rule.name!r} need a piece `dbfs`")

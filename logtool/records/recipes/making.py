@@ -5,7 +5,7 @@ from __future__ import annotations
 from logtool.records.layout import COLUMN_NAMES, KNOWN_KEYS, MAX_LINE_BYTES
 from logtool.records.marks import MARK, PASSED_OVER
 from logtool.records.quick import sql_text
-from logtool.records.recipes.cutting import BLANK, ENCODING, NONE
+from logtool.records.recipes.cutting import BLANK, ENCODING, HEADER, NONE, SKIPPED
 from logtool.records.recipes.names import COLUMN_TARGETS, target_of
 from logtool.records.recipes.patterns import groups_of
 from logtool.records.recipes.recipe import BAD_ENCODING, BAD_TIME, NO_DATE, NO_RULE, Recipe, Rule
@@ -30,7 +30,8 @@ def said_sql(recipe: Recipe) -> str:
     parts = []
     for part in MESSAGE_PARTS:
         found = [
-            f"WHEN {k} THEN nullif(regexp_extract({anyone}, {sql_text(f'^(?:{pattern})$')}, {groups.index(part) + 1}), '')"
+            f"WHEN {k} THEN nullif(regexp_extract({anyone}, {sql_text(f'^(?:{pattern})$')},"
+            f" {groups.index(part) + 1}), '')"
             for k, pattern in enumerate(recipe.messages)
             if part in (groups := groups_of(pattern))
         ]
@@ -77,20 +78,25 @@ def made_sql(recipe: Recipe, own: list[str], constants: dict[str, str], *, has_s
         joins.append("LEFT JOIN said USING (text)")
     joins += [f"ASOF LEFT JOIN carried_{t} ON parsed.i >= carried_{t}.i" for t in carried]
     kept = [*COLUMN_TARGETS, *KNOWN_KEYS, *recipe.keep, "place", "signal_hz"]
-    values = []
+    values, given = [], []
     for target in dict.fromkeys(kept):
         cases = []
         for k, rule in enumerate(recipe.rules):
             if not rule.is_record:
                 continue
-            value = _value_of(target, rule, recipe, own=own, carried=carried, constants=constants, has_said=has_said)
+            value = _value_of(
+                target, rule, recipe, own=own, carried=carried, constants=constants, has_said=has_said
+            )
             if value != "NULL":
                 cases.append((k, value))
+        given += [target] if cases else []
         values.append(f"{_by_rule(cases)} AS {column(target)}")
     source = f"SELECT parsed.i, rule, stamp_us, time_us, {', '.join(values)} FROM parsed {' '.join(joins)}"
-    if _has_signal(recipe, own, constants):
+    if "signal_hz" in given:
         source = _from_signal(source)
-    return f"SELECT i, rule, {_time_us(recipe)} AS time_us, receiver, dial_hz, {_out(recipe)} AS out FROM ({source})"
+        given += ["dial_hz", "audio_hz"]
+    columns = f"i, rule, {_time_us(recipe)} AS time_us, receiver, dial_hz, {_out(recipe, given)} AS out"
+    return f"SELECT {columns} FROM ({source})"
 
 
 def _by_rule(cases: list[tuple[int, str]]) -> str:
@@ -142,11 +148,6 @@ def _takes_elsewhere(kind: str, target: str) -> bool:
     return target in _EVERYWHERE
 
 
-def _has_signal(recipe: Recipe, own: list[str], constants: dict[str, str]) -> bool:
-    ruled = {target_of(name) for rule in recipe.rules for name in rule.constants}
-    return "signal_hz" in own or "signal_hz" in constants or "signal_hz" in ruled
-
-
 def _from_signal(source: str) -> str:
     """Return the relation with the dial and the audio frequency that the signal's own frequency gives."""
     signal, audio = (f"try_cast({name} AS {_SIGNAL})" for name in ("signal_hz", "audio_hz"))
@@ -164,15 +165,22 @@ def _time_us(recipe: Recipe) -> str:
     return f"time_us - CASE WHEN rule IN ({', '.join(map(str, heard))}) THEN {slot_us} ELSE 0 END"
 
 
-def _out(recipe: Recipe) -> str:
-    """Return SQL of the made line."""
+def _out(recipe: Recipe, given: list[str]) -> str:
+    """Return SQL of the made line; the columns that nothing gives are left empty."""
     time = f"replace(make_timestamp({_time_us(recipe)})::VARCHAR, ' ', 'T') || 'Z'"
     kinds = " ".join(f"WHEN {k} THEN {sql_text(r.kind)}" for k, r in enumerate(recipe.rules) if r.is_record)
-    fields = [time, f"CASE rule {kinds} END", *(f"coalesce({column(name)}, '')" for name in COLUMN_NAMES[2:-1])]
-    keys = [f"{sql_text(name + '=')} || {column(name)}" for name in (*KNOWN_KEYS, *recipe.keep)]
-    line = f"concat_ws(chr(9), {', '.join(fields)}, concat_ws('; ', {', '.join(keys)}))"
+    fields = [
+        time,
+        f"CASE rule {kinds} END",
+        *(f"coalesce({column(name)}, '')" for name in COLUMN_NAMES[2:-1]),
+    ]
+    keys = [
+        f"{sql_text(name + '=')} || {column(name)}" for name in (*KNOWN_KEYS, *recipe.keep) if name in given
+    ]
+    more = f"concat_ws('; ', {', '.join(keys)})" if keys else "''"
+    line = f"concat_ws(chr(9), {', '.join(fields)}, {more})"
     passed_over = [k for k, rule in enumerate(recipe.rules) if not rule.is_record]
-    nothing = ", ".join(map(str, [*passed_over, -4, -5]))
+    nothing = ", ".join(map(str, [*passed_over, SKIPPED, HEADER]))
     return f"""CASE WHEN rule IN ({nothing}) THEN {sql_text(PASSED_OVER)}
         WHEN rule = {BLANK} THEN ''
         WHEN rule = {NONE} THEN {sql_text(MARK + NO_RULE)}
@@ -186,7 +194,8 @@ def guarded_sql(made: str, *, has_control: bool) -> str:
     """Return the made relation with a mark for lines that the engine's reader would misread."""
     cases = [f"WHEN strlen(out) > {MAX_LINE_BYTES} THEN {sql_text(MARK + 'too-long')}"]
     if has_control:
-        cases.append(f"WHEN regexp_matches(out, {sql_text(_CONTROL)}) OR contains(out, chr(0)) THEN {sql_text(MARK + 'control-character')}")
+        cases.append(
+            f"WHEN regexp_matches(out, {sql_text(_CONTROL)}) OR contains(out, chr(0))"
+            f" THEN {sql_text(MARK + 'control-character')}"
+        )
     return f"SELECT * REPLACE (CASE {' '.join(cases)} ELSE out END AS out) FROM ({made})"
-
-

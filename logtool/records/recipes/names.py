@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from logtool.records.layout import COLUMN_NAMES, KNOWN_KEYS
+from logtool.records.layout import COLUMN_NAMES, KNOWN_KEYS, NUMBER_FORM
 
 
 @dataclass(frozen=True)
@@ -42,9 +42,8 @@ NUMBER_TARGETS = (
     "late_s",
     "power_dbm",
     "signal_hz",
-    *(name for name, key in KNOWN_KEYS.items() if key.low is not None or name in ("report_db", "drift_hz", "temperature_c")),
+    *(name for name, key in KNOWN_KEYS.items() if key.form == NUMBER_FORM and not key.words),
 )  # fmt: skip
-PLACE_NAMES = ("place", "antenna")  # of the receiver: they go into setups only
 
 
 def target_of(name: str) -> str:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import hashlib
 from collections import Counter
+from concurrent.futures import Future, ThreadPoolExecutor
 from datetime import UTC, datetime, timedelta
 from pathlib import Path
 from typing import IO
@@ -86,20 +87,34 @@ def scan_by(
 
 def _write(found: Scan, converter: Converter, text: Text, options: ScanOptions, copy: IO[bytes]) -> None:
     stranger = None if options.anyway else _Stranger(converter.recipe)
-    for block, made in converter.blocks(text):
-        if found.lines == 0 and block.startswith(LAYOUT_LINE.encode()):
-            raise RecipeError(f"{found.source.name}: it follows the log layout already; leave --recipe away")
+
+    def take(block: bytes, made: Made) -> bool:
+        """Write a block's lines; return whether the file is something else altogether."""
         lines = joined(made)
         if stranger is not None and stranger.may_be:
             stranger.look(block, lines)
             if stranger.may_be and stranger.lines >= STRANGER_LINES:
-                break
+                return True
         if b"\tsetup\t" in lines:
             note_setups(found, lines)
         copy.write(lines)
         found.lines += len(made.rules)
         if options.progress is not None:
             options.progress(text.stored_bytes)
+        return False
+
+    with ThreadPoolExecutor(1) as behind:  # a block is written while the engine works on the next
+        taking: Future[bool] | None = None
+        for block, made in converter.blocks(text):
+            if taking is None and block.startswith(LAYOUT_LINE.encode()):
+                raise RecipeError(
+                    f"{found.source.name}: it follows the log layout already; leave --recipe away"
+                )
+            if taking is not None and taking.result():
+                break
+            taking = behind.submit(take, block, made)
+        if taking is not None:
+            taking.result()
     if stranger is not None and stranger.may_be and stranger.reasons:
         found.refused = stranger.told()
 

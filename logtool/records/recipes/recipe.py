@@ -91,5 +91,7 @@ class Recipe:
     name_pattern: str | None = None
     name_date_form: str | None = None
     values: dict[str, dict[str, str]] = field(default_factory=dict)
-    messages: tuple[str, ...] | None = None  # patterns with named groups, in the order in which they are tried
+    messages: tuple[str, ...] | None = (
+        None  # patterns with named groups, in the order in which they are tried
+    )
     never_locators: tuple[str, ...] = ()

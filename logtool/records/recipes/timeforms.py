@@ -13,7 +13,12 @@ DIRECTIVES = {
 }  # fmt: skip
 ISO, UNIX_S, UNIX_MS = "iso", "unix_s", "unix_ms"
 WORD_FORMS = {UNIX_S: 1_000_000, UNIX_MS: 1_000}  # to microseconds
-ABSOLUTE, LOCAL, YEARLESS, OF_DAY = 0, 1, 2, 3  # what a time lacks: nothing, its zone, its year too, its date too
+ABSOLUTE, LOCAL, YEARLESS, OF_DAY = (
+    0,
+    1,
+    2,
+    3,
+)  # what a time lacks: nothing, its zone, its year too, its date too
 _ISO = r"[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(:[0-9]{2}([.,][0-9]{1,6})?)? ?(Z|[+-][0-9]{2}(:?[0-9]{2})?)?"
 _ISO_DATE = "%Y-%m-%d"
 _LEAP_YEAR = "2000"  # stands in for a year that is not written, so that 29 February can be read
@@ -39,7 +44,9 @@ def form_fault(form: str) -> str | None:
         if found.count(one) > 1:
             return f"%{one} stands twice"
     if not found:
-        return f"it names no part of a time; write it like %H:%M:%S, or one of {', '.join((ISO, *WORD_FORMS))}"
+        return (
+            f"it names no part of a time; write it like %H:%M:%S, or one of {', '.join((ISO, *WORD_FORMS))}"
+        )
     if form.endswith("%"):
         return "a % at its end"
     if ("I" in found) != ("p" in found):

@@ -11,7 +11,9 @@ from logtool.records.recipes.zones import SECOND_US, both_utc_us
 
 DAY_US = 86_400 * SECOND_US
 NEW_DAY_US = DAY_US // 2  # a fall by more is a new day, a smaller one a step of the clock
-BACK_US = 120 * SECOND_US  # so little back over midnight is a step of the clock and no gap of a day; our choice
+BACK_US = (
+    120 * SECOND_US
+)  # so little back over midnight is a step of the clock and no gap of a day; our choice
 _NEW_YEAR_US = 182 * DAY_US  # a fall by more, in times without a year, is a new year
 _ORDER_SLACK_US = 600 * SECOND_US  # lines may be so much out of order in an hour that comes twice; our choice
 NO_TIME = np.iinfo(np.int64).min
@@ -110,7 +112,9 @@ class FileClock:
         starts = np.searchsorted(segment, np.arange(len(bases_us)))  # the first time of each segment
         before_days = np.concatenate(([0], days))[starts]
         days = days - before_days[segment]
-        with_days = np.where(bases_us[segment] == NO_TIME, NO_TIME, bases_us[segment] + days * DAY_US + times_us)
+        with_days = np.where(
+            bases_us[segment] == NO_TIME, NO_TIME, bases_us[segment] + days * DAY_US + times_us
+        )
         if segment[-1] != len(given):
             self._day_us, self._last_of_day_us = int(days_us[given[-1]]), None
         else:
@@ -136,7 +140,9 @@ class FileClock:
         self._year, self._last_in_year_us = int(years[-1]), int(stamps_us[-1])
         read = stamps_us.astype("M8[us]")
         month = read.astype("M8[M]")
-        months = (years - 1970).astype("M8[Y]").astype("M8[M]") + (month - read.astype("M8[Y]").astype("M8[M]"))
+        months = (years - 1970).astype("M8[Y]").astype("M8[M]") + (
+            month - read.astype("M8[Y]").astype("M8[M]")
+        )
         moved = months.astype("M8[us]") + (read - month.astype("M8[us]"))
         there = moved.astype("M8[M]") == months  # no 29 February in this year
         return np.where(there, moved.astype(np.int64), NO_TIME)

@@ -12,7 +12,9 @@ from logtool.records.recipes.recipe import Recipe
 
 BLANKS = sql_text(" \t")
 CALLS = ("sender", "addressee")
-_UNREADABLE = sql_text("?")  # stands for what is no number, so that the judge sets the line aside by its column
+_UNREADABLE = sql_text(
+    "?"
+)  # stands for what is no number, so that the judge sets the line aside by its column
 _DECIMAL = "DECIMAL(24, 9)"
 
 
@@ -21,9 +23,22 @@ def column(name: str) -> str:
     return f'"{name}"'
 
 
+def trimmed(text: str) -> str:
+    """Return SQL for a text without blanks round it; most have none, and to look is cheaper than to trim."""
+    return (
+        f"CASE WHEN {text} < '!' OR ends_with({text}, ' ') OR ends_with({text}, chr(9))"
+        f" THEN trim({text}, {BLANKS}) ELSE {text} END"
+    )
+
+
+def is_blank_sql(text: str) -> str:
+    """Return the condition that a text has nothing but spaces and TABs, which come before all that is visible."""
+    return f"({text} < '!' AND trim({text}, {BLANKS}) = '')"
+
+
 def cleaned_sql(raw: str, piece: str, recipe: Recipe) -> str:
     """Return SQL for a piece without blanks round it; null where it is empty or stands for nothing."""
-    text = f"nullif(trim({raw}, {BLANKS}), '')"
+    text = f"nullif({trimmed(raw)}, '')"
     if recipe.empty:
         text = f"CASE WHEN {text} NOT IN ({', '.join(map(sql_text, recipe.empty))}) THEN {text} END"
     if piece in recipe.values:
@@ -63,7 +78,9 @@ def constant_value(piece: str, value: str) -> tuple[str, str]:
     ('dial_hz', '7041500')
     """
     target = target_of(piece)
-    if target not in NUMBER_TARGETS or (piece not in WATTS and PIECES[piece].factor == "1" and "." not in value):
+    if target not in NUMBER_TARGETS or (
+        piece not in WATTS and PIECES[piece].factor == "1" and "." not in value
+    ):
         return target, value
     try:
         number = Decimal(value) * Decimal(PIECES[piece].factor)
@@ -85,7 +102,8 @@ def _number_sql(text: str, piece: str, decimal: str) -> str:
         number = f"CASE WHEN {watts} > 0 THEN round(10 * log10({watts}) + 30, 3)::DECIMAL(18, 3) END"
     elif target in INTEGER_TARGETS:
         if factor == "1":
-            return f"CASE WHEN contains({text}, '.') THEN coalesce({_whole(text, factor)}, {_UNREADABLE}) ELSE {text} END"
+            whole = f"coalesce({_whole(text, factor)}, {_UNREADABLE})"
+            return f"CASE WHEN contains({text}, '.') THEN {whole} ELSE {text} END"
         return f"CASE WHEN {text} IS NOT NULL THEN coalesce({_whole(text, factor)}, {_UNREADABLE}) END"
     elif factor == "1":
         return f"CASE WHEN starts_with({text}, '+') THEN substring({text}, 2) ELSE {text} END"

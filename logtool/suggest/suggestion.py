@@ -1,0 +1,126 @@
+"""From a file to a first recipe for it, with what is in doubt."""
+
+from __future__ import annotations
+
+import os
+from dataclasses import dataclass
+
+from logtool.suggest.doubts import Doubt
+from logtool.suggest.fixed import fixed_table
+from logtool.suggest.looking import Look, look_at
+from logtool.suggest.others import find_others
+from logtool.suggest.pairs import pairs_table
+from logtool.suggest.positions import order_table
+from logtool.suggest.roles import Roles, find_roles
+from logtool.suggest.slots import find_slots
+from logtool.suggest.structured import SEPARATORS, json_table, separated_table
+from logtool.suggest.tables import Table, score
+from logtool.suggest.timeforms import shared_forms
+from logtool.suggest.times import date_in_name
+from logtool.suggest.values import given
+from logtool.suggest.writing import Draft, no_structure, written
+
+_LEAST_SCORE = 1.5
+_FIXED_BONUS = 0.05
+_LOGTOOL = "# logtool layout"
+
+
+@dataclass(frozen=True)
+class Suggestion:
+    """A recipe for an unknown text.
+
+    Attributes
+    ----------
+    recipe : str
+        TOML with comments. Lines with `FILL IN` say what only the user knows; as long as they are not filled in,
+        the recipe is refused with a message that says so.
+    doubts : tuple of str
+        What the text does not tell, each beginning with the names of what may come out wrong.
+    sure : bool
+        Whether everything is decided that the text itself could tell. The zone of the times, which end of a slot
+        they mark and what has to be filled in are for the user in any case.
+    trial : str
+        The recipe with stand-ins for what has to be filled in: to show how lines would be read, for nothing else.
+        Empty where no structure was found.
+    """
+
+    recipe: str
+    doubts: tuple[str, ...]
+    sure: bool
+    trial: str
+
+
+def suggest(path: str | os.PathLike[str]) -> Suggestion:
+    """Return a first recipe for a text log.
+
+    What is not decided by the values themselves is left out or marked `NOT SURE`, and told in `doubts`.
+
+    Parameters
+    ----------
+    path : str or path
+        A file, plain, `.gz` or `.zst`. A sample of it is looked at.
+
+    Raises
+    ------
+    UnreadableError
+        Where the file cannot be read.
+    """
+    look = look_at(path)
+    if look.trouble:
+        return _without_structure(look, look.trouble)
+    if look.lines[0].text.startswith(_LOGTOOL):
+        return _without_structure(look, "it is a log in logtool's own layout, which needs no recipe")
+    texts = [line.text for line in look.lines]
+    table = best_table(texts)
+    if table is None:
+        return _without_structure(look, "no structure was found that most lines share and that holds call signs or times")
+    roles = find_roles(table, [look.lines[row].part for row in table.rows], look.name)
+    if roles.times.time is None:
+        return _without_structure(look, "no column of times was found")
+    if not any(name in ("sender", "text", "addressee") for name in roles.names.values()):
+        return _without_structure(look, "no column of call signs or messages was found")
+    draft = _draft(look, table, roles)
+    recipe, trial = written(draft)
+    essential = [doubt for doubt in draft.doubts if doubt.essential]
+    return Suggestion(recipe, tuple(str(doubt) for doubt in draft.doubts), not essential, trial)
+
+
+def _without_structure(look: Look, why: str) -> Suggestion:
+    doubt = Doubt("structure", why)
+    return Suggestion(no_structure(look, why), (str(doubt), *map(str, look.doubts)), False, "")
+
+
+def best_table(texts: list[str]) -> Table | None:
+    """Return the way of cutting lines that explains most of them, or None where none explains enough."""
+    found = json_table(texts)
+    if found is not None and score(found, len(texts)) >= _LEAST_SCORE:
+        return found
+    tables = [separated_table(texts, separator) for separator in SEPARATORS]
+    tables += [pairs_table(texts, sign) for sign in ("=", ":")]
+    tables.append(order_table(texts))
+    fixed = fixed_table(texts)
+    ranked = [(score(table, len(texts)), -k, table) for k, table in enumerate(tables) if table is not None]
+    best = max(ranked, key=lambda one: one[:2])[2] if ranked else None
+    if fixed is not None and (best is None or _is_better(fixed, best, len(texts))):
+        best = fixed
+    if best is None or score(best, len(texts)) < _LEAST_SCORE:
+        return None
+    if not any(shared_forms(given(column.values)) for column in best.columns):
+        return None
+    return best
+
+
+def _is_better(fixed: Table, other: Table, total: int) -> bool:
+    """Return whether fixed places read more lines, or more of them, than the other way."""
+    return score(fixed, total) > score(other, total) * (1 + _FIXED_BONUS) and len(fixed.rows) > len(other.rows)
+
+
+def _draft(look: Look, table: Table, roles: Roles) -> Draft:
+    times = roles.times
+    named = date_in_name(look.name) if not times.with_year else None
+    taken = set(table.rows) | set(table.header_rows)
+    dial_known = roles.has("dial_hz")
+    others = find_others(list(look.lines), taken, times, dated=times.dated, dial_known=dial_known)
+    slots = find_slots(times.moments, times.time_form, [look.lines[row].part for row in table.rows])
+    doubts = [*look.doubts, *table.doubts, *roles.doubts, *slots.doubts, *others.doubts]
+    return Draft(look=look, table=table, roles=roles, others=others, slots=slots, name_date=named, doubts=doubts)
