@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import sys
+from collections import Counter
 from collections.abc import Callable, Sequence
 from typing import IO, Any
 
@@ -231,4 +232,11 @@ def _read(inputs: list[FileLedger]) -> list[str]:
         f"{_some(sum(file.records for file in inputs), 'record')}, "
         f"{count(sum(file.repeated for file in inputs))} repeated, {count(aside)} set aside"
     )
-    return [told + (" (logtool check shows them)" if aside else "")]
+    rules: Counter[str] = Counter()
+    for file in inputs:
+        rules.update(file.rules or {})
+    by_rule = ", ".join(f"{count(lines)} {name}" for name, lines in sorted(rules.items()))
+    return [
+        told + (" (logtool check shows them)" if aside else ""),
+        *([f"lines by the recipe's rules: {by_rule}"] if by_rule else []),
+    ]

@@ -16,13 +16,15 @@ from logtool.records.engine import connect, create_table, lines_sql
 from logtool.records.ledger import FileLedger
 from logtool.records.marks import MARK
 from logtool.records.privacy import Privacy
-from logtool.records.progress import LOOK_SHARE, Polled, Progress
+from logtool.records.progress import LOOK_SHARE, RECIPE_SHARE, Polled, Progress
 from logtool.records.scan import LEAST_MEMORY_MB, EndlessLineError, Scan, ScanOptions, scan
 from logtool.records.sources import STDIN, Source, UnreadableError, sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
 
 if TYPE_CHECKING:
     import duckdb
+    import pandas as pd
+    import pyarrow as pa
 
     from logtool.records.recipes.recipe import Recipe
 
@@ -81,6 +83,7 @@ class Logs:
         self.at = at
         self.antenna_name = antenna_name
         self._options = options
+        self._look_share = RECIPE_SHARE if options.recipe else LOOK_SHARE
         self._folder = tempfile.TemporaryDirectory(prefix="logtool-", ignore_cleanup_errors=True)
         self._connection: duckdb.DuckDBPyConnection | None = None
         self._bounds: frozenset[int] | None = None
@@ -215,8 +218,25 @@ class Logs:
 
         return source_lines(self._options.recipe, seen.source, numbers)
 
+    def to_arrow(self) -> pa.Table:
+        """Return all records as a table of the layout's columns, typed; see `logtool.records.arrow`."""
+        from logtool.records.arrow import records_arrow
+
+        return records_arrow(self)
+
+    def to_pandas(self) -> pd.DataFrame:
+        """Return all records as a frame of the layout's columns, typed: one row a record, in order of time.
+
+        Each record stands there once; what is not known is missing; `time` is in UTC.
+        """
+        return self.to_arrow().to_pandas()
+
     def _scan(self, source: Source, path: Path, options: ScanOptions) -> Scan:
-        """Look over a file: by the recipe where there is one and the file does not follow the layout."""
+        """Look over a file: ADI by its name; by the recipe, where there is one, unless it is in the layout."""
+        if source.is_adi:
+            from logtool.records.adi import scan_adi
+
+            return scan_adi(source, path, options)
         recipe = self._options.recipe
         if recipe is not None:
             from logtool.records.recipes.reading import in_layout, scan_by
@@ -232,7 +252,7 @@ class Logs:
         done, whole = 0, max(1, sum(sizes))
 
         def told(file_bytes: int) -> None:
-            self._tell("looking over the files", LOOK_SHARE * min(1, (done + file_bytes) / whole))
+            self._tell("looking over the files", self._look_share * min(1, (done + file_bytes) / whole))
 
         options = ScanOptions(self._options.with_digest, self._options.anyway, told, self._options.threads)
         scans: list[Scan] = []
@@ -296,7 +316,7 @@ class Logs:
     def _make_tally(self, bounds: frozenset[int]) -> None:
         cuts = Cuts(self._make_cuts(), tuple(sorted(bounds)), self.privacy.coarsen)
         lines = self.lines  # once: a file that changes from here on is read anew as a whole
-        with Polled(self.connection, self._options.progress):
+        with Polled(self.connection, self._options.progress, self._look_share):
             self._odd = create_tally(self.connection, lines, cuts=cuts)
             repeats = drop_repeated(self.connection, lines, cuts=cuts)
         self._ledger = self._count(repeats)

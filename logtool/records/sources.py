@@ -16,6 +16,7 @@ from logtool.errors import FileError, UsageError
 STDIN = "-"
 LOG_ENDINGS = (".log", ".txt", ".tsv")
 PACKED_ENDINGS = (".gz", ".zst")
+ADI_ENDINGS = (".adi", ".adif")
 BLOCK_BYTES = 1 << 19  # a block of text that is looked at in one go; our choice
 PIECE_BYTES = 1 << 12  # fed to an unpacker at a time, so that damage costs little good text; our choice
 
@@ -31,6 +32,11 @@ class Source:
     def packing(self) -> str:
         """How the bytes are packed by the name's ending: `.gz`, `.zst` or an empty text."""
         return next((end for end in PACKED_ENDINGS if self.name.lower().endswith(end)), "")
+
+    @property
+    def is_adi(self) -> bool:
+        """Whether the name says that the file is ADI, packed or not."""
+        return self.name.lower().removesuffix(self.packing).endswith(ADI_ENDINGS)
 
 
 class UnreadableError(FileError):

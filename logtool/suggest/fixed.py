@@ -6,10 +6,10 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from logtool.suggest.cores import core_kind
-from logtool.suggest.tables import Column, Table, holds_call, kind_of, without_wrong_times
+from logtool.suggest.tables import Column, Table, give_names, holds_call, kind_of, without_wrong_times
 from logtool.suggest.timeforms import has_date, has_time, has_year, shared_forms
 from logtool.suggest.toml import inline
-from logtool.suggest.values import given
+from logtool.suggest.values import given, is_word
 
 _GUTTER_SHARE = 0.985  # of the lines are blank at a place between columns
 _LEAST_ROWS = 8
@@ -45,10 +45,9 @@ def fixed_table(lines: list[str]) -> Table | None:
     cells = [[_cell(lines[i], span) for span in spans] for i in rows]
     kinds = [kind_of(tuple(given(row[k] for row in cells)[:300])) for k in range(len(spans))]
     last = len(spans)
-    while last > 1 and kinds[last - 2] in _MESSAGE_KINDS and kinds[last - 1] in _MESSAGE_KINDS and not _is_column(
-        [row[last - 2] for row in cells]
-    ):
-        last -= 1
+    if kinds[-1] in ("text", "other"):  # the last words of messages: what stands before belongs to them
+        while last > 1 and kinds[last - 2] in _MESSAGE_KINDS and not _is_column([row[last - 2] for row in cells]):
+            last -= 1
     spans = [*spans[: last - 1], (spans[last - 1][0], 0)]
     everything = [i for i, line in enumerate(lines) if _fits(line, spans, kinds)]
     columns = [
@@ -60,6 +59,9 @@ def fixed_table(lines: list[str]) -> Table | None:
         return None
     way = FixedWay(tuple((first + 1, end) for first, end in spans))
     table = Table(way, columns, everything)
+    for column in columns:
+        column.literal = len(set(column.values)) == 1 and is_word(column.values[0])
+    give_names(table, lines)
     without_wrong_times(table)
     return table
 

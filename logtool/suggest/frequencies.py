@@ -125,7 +125,7 @@ def name_radio(radio: list[Frequency], audio: tuple[float | None, ...] | None) -
         unit = one.unit.lower()
         if one.few:
             name = "dial"
-        elif audio is not None and _lie_above_dials(one, audio):
+        elif audio is not None and lies_above_dials(one, audio):
             name = "signal"
         elif audio is None:
             name = "signal"
@@ -150,7 +150,7 @@ def name_radio(radio: list[Frequency], audio: tuple[float | None, ...] | None) -
     return names, doubts
 
 
-def _lie_above_dials(radio: Frequency, audio: tuple[float | None, ...]) -> bool:
+def lies_above_dials(radio: Frequency, audio: tuple[float | None, ...]) -> bool:
     """Return whether radio minus audio gives few dials."""
     dials = [round((rf - af) / 10) for rf, af in zip(radio.hz, audio, strict=True) if rf is not None and af is not None]
     different = len({rf for rf in radio.hz if rf is not None})

@@ -11,7 +11,7 @@ from logtool.records.recipes.loading import DEFAULT_MESSAGES
 from logtool.records.recipes.patterns import template_pattern
 from logtool.suggest.doubts import Doubt
 from logtool.suggest.hints import meanings_of
-from logtool.suggest.tables import Column, holds_call
+from logtool.suggest.tables import FEW_LOCATORS, Column, begins_with_numbers, holds_call
 from logtool.suggest.values import CALLING_WORDS, EMPTY_WORDS, given, is_call, is_locator, quoted
 
 SENDER_FIRST = (
@@ -68,12 +68,18 @@ def find_calls(columns: list[Column], taken: set[int]) -> Calls:
         found.names[text] = "text"
     _name_locators(found, columns, [
         k for k, kind in kinds.items()
-        if k != text and (kind == "locator" or (kind == "word" and _named_locators(columns[k])))
+        if k != text and ((kind == "locator" and _may_be(columns[k], "locator")) or (kind == "word" and _named_locators(columns[k])))
     ])
     _name_calls(found, columns, [k for k, kind in kinds.items() if kind == "call" and k != text], text)
     if text is not None and any(map(holds_call, columns[text].values)):
         _settle_message(found, columns, columns[text].values)
     return found
+
+
+def _may_be(column: Column, name: str) -> bool:
+    """Return whether a column's own name does not speak against a meaning."""
+    means = meanings_of(column.hint)
+    return not means or name in means
 
 
 def _named_locators(column: Column) -> bool:
@@ -88,11 +94,13 @@ def _name_locators(found: Calls, columns: list[Column], candidates: list[int]) -
     named = [k for k in varying if "locator" in meanings_of(columns[k].hint)]
     if len(varying) == 1:
         found.names[varying[0]] = "locator"
+        if not named and len(set(given(columns[varying[0]].values))) <= FEW_LOCATORS:
+            found.doubts.append(Doubt("locator, mode", f"{columns[varying[0]].label} ({quoted(columns[varying[0]].values)}) is taken as the sender's locator; it could be the mode"))
     elif len(named) == 1:
         found.names[named[0]] = "locator"
     elif varying:
         labels = ", ".join(columns[k].label for k in varying)
-        found.doubts.append(Doubt("locator", f"NOT SURE which is the sender's: {labels}; none is read"))
+        found.doubts.append(Doubt("locator, mode", f"NOT SURE which is the sender's: {labels}; none is read"))
 
 
 def _name_calls(found: Calls, columns: list[Column], candidates: list[int], text: int | None) -> None:
@@ -216,6 +224,12 @@ def _settle_message(found: Calls, columns: list[Column], texts: list[str]) -> No
                   f" forms, as {quoted(odd)}; write their form into [message] patterns")
         )  # fmt: skip
     strange = [text for text in with_calls if _strange_words(text)]
+    if begins_with_numbers(texts):
+        strange = strange or with_calls
+        found.doubts.append(
+            Doubt("snr_db, audio_hz, late_s, dial_hz", f"some texts begin with a number, as {quoted(t for t in texts if t[:1] in '+-0123456789')}:"
+                  " a column may be missing in some lines")
+        )  # fmt: skip
     if len(strange) > _STRANGE_SHARE * len(with_calls):
         words = quoted(word for text in strange for word in _strange_words(text))
         found.doubts.append(

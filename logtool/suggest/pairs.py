@@ -16,8 +16,8 @@ FEWEST_KEYS = 3
 _LEAST_SHARE = 0.3
 MOST_ORDERS = 8
 _PAIR = {
-    "=": re.compile(r"(?<![\w.])([A-Za-z][\w.-]{0,24}) ?= ?(?=\S)"),
-    ":": re.compile(r"(?<![\w.])([A-Za-z][\w.-]{0,24}): ?(?=\S)"),
+    "=": re.compile(r"(?<![\w.])([A-Za-z][\w./-]{0,24}) ?= ?(?=\S)"),
+    ":": re.compile(r"(?<![\w.])([A-Za-z][\w./-]{0,24}): ?(?=\S)"),
 }
 _BETWEEN = r"[ \t,;|]+"
 _STRIPPED = " \t,;|"
@@ -34,6 +34,7 @@ class PairsWay:
     lead_glue: tuple[str, ...]
     blanks: frozenset[str]  # keys whose values hold blanks
     optional: frozenset[str]
+    commas: frozenset[str] = frozenset()  # keys whose values hold commas
 
     def rule(self, names: Mapping[int, str], forms: Mapping[int, str]) -> list[str]:
         """Return the TOML lines of the first order's rule."""
@@ -52,7 +53,7 @@ class PairsWay:
         out += (escaped(self.lead_glue[self.lead]) or _BETWEEN) if self.lead else ""
         for j, key in enumerate(order):
             column = self.keys.index(key)
-            form = ".*?" if key in self.blanks else r"[^ \t,;|]*?"
+            form = ".*?" if key in self.blanks else r"[^ \t;|]*?" if key in self.commas else r"[^ \t,;|]*?"
             value = f'"?(?P<{names[column]}>{form})"?' if column in names else f'"?{form}"?'
             pair = escaped(key) + f" ?{self.sign} ?" + value
             if key in self.optional:
@@ -99,7 +100,9 @@ def pairs_table(lines: list[str], sign: str) -> Table | None:
     merged = _merged(list(orders))
     blanks = frozenset(key for key in keys if any(" " in value for value in values[key]))
     optional = frozenset(key for key in keys if any(key not in order for order in orders))
-    way = PairsWay(sign, tuple(merged[:MOST_ORDERS]), ("",) * lead + tuple(keys), lead, tuple(lead_glue), blanks, optional)
+    commas = frozenset(key for key in keys if any("," in value for value in values[key]))
+    all_keys = ("",) * lead + tuple(keys)
+    way = PairsWay(sign, tuple(merged[:MOST_ORDERS]), all_keys, lead, tuple(lead_glue), blanks, optional, commas)
     table = Table(way, columns, rows)
     if len(merged) > MOST_ORDERS:
         table.doubts.append(Doubt("lines", "the keys come in very many orders; those left over are set aside"))

@@ -8,9 +8,9 @@ from dataclasses import dataclass
 
 from logtool.suggest.cores import Core, cores_of
 from logtool.suggest.hints import meanings_of, unit_of
-from logtool.suggest.tables import Column, Table, enough, holds_call, split_by_word, without_wrong_times
+from logtool.suggest.tables import Column, Table, enough, give_names, holds_call, split_by_word, without_wrong_times
 from logtool.suggest.toml import escaped, plain, text_of
-from logtool.suggest.values import CALLING_WORDS, ENOUGH, is_word, words_for_nothing
+from logtool.suggest.values import CALLING_WORDS, ENOUGH, is_call, is_word, words_for_nothing
 
 FORMS = {
     "number": r"[+-]?[0-9]+(?:[.,][0-9]+)?",
@@ -54,6 +54,7 @@ class OrderWay:
     end: str
     blanks_inside: bool
     empties: tuple[tuple[str, ...], ...]
+    tabs: bool
     strict: bool = False
 
     def rule(self, names: Mapping[int, str], forms: Mapping[int, str]) -> list[str]:
@@ -88,7 +89,8 @@ class OrderWay:
                 out += escaped(self.always[k])
             else:
                 out += f"(?:{form})" if "|" in form else form
-        return out + escaped(self.end.rstrip()) + r"[ \t]*"
+        out += escaped(self.end.rstrip()) + r"[ \t]*"
+        return out.replace(" +", r"[ \t]+") if self.tabs else out
 
 
 def order_table(lines: list[str]) -> Table | None:
@@ -102,8 +104,10 @@ def order_table(lines: list[str]) -> Table | None:
     kinds: list[str] = []
     dropped = 0
     k = 0
+    counts = Counter(len(cut[i][0]) for i in rows)
+    even = enough(counts.most_common(1)[0][1], len(rows))  # so a general call may stand in a column of call signs
     while True:
-        found = _position([cut[i][0] for i in rows], k)
+        found = _position([cut[i][0] for i in rows], k, even=even)
         if found is None:
             break
         good, kind, before = found
@@ -220,8 +224,10 @@ def _table(lines: list[str], cut: list[tuple[list[Core], str]], rows: list[int],
     _take_hints(columns, glue, kinds)
     inside = any(" " in value for column in columns[:k] for value in column.values)
     empties = tuple(tuple(sorted(words_for_nothing(column.values))) for column in columns)
-    way = OrderWay(tuple(glue), tuple(kinds), always, k if has_text else -1, end, inside, empties, dropped > 0)
+    tabs = any("\t" in lines[i] for i in rows)
+    way = OrderWay(tuple(glue), tuple(kinds), always, k if has_text else -1, end, inside, empties, tabs, dropped > 0)
     table = Table(way, columns, rows, strict=dropped > 0)
+    give_names(table, lines)
     split_by_word(table, lines)
     without_wrong_times(table)
     return table
@@ -291,7 +297,7 @@ def normal(glue: str) -> str:
     return out
 
 
-def _position(rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE) -> tuple[list[bool], str, str] | None:
+def _position(rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE, *, even: bool = False) -> tuple[list[bool], str, str] | None:
     """Return which rows are of the main kind at a position, that kind and the signs before, or None for text."""
     there = [row for row in rows if len(row) > k]
     if not enough(len(there), len(rows)):
@@ -319,7 +325,13 @@ def _position(rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE
         return good(set(words), by_text=True), "constant", before
     if kind in _NUMBER_FIRST and most + empties >= needed * len(there):
         return good({kind}), kind, before
-    if set(words) & CALLING_WORDS:
+    calling = set(words) & CALLING_WORDS
+    if calling and even and set(kinds) <= {"call", "word"}:
+        most, total = sum(n for word, n in words.items() if is_call(word) or word in CALLING_WORDS), len(there)
+        if most + empties < ENOUGH * total or len(words) == len(calling):
+            return None
+        return good({word for word in words if is_call(word)} | calling, by_text=True), "call", before
+    if calling:
         return None
     if kind in ("call", "locator") and enough(most + empties, len(there)):
         if kind == "locator" and len(words) <= 2:

@@ -7,9 +7,9 @@ from dataclasses import dataclass, field
 from logtool.records.layout import NAME_FORM
 from logtool.records.recipes.names import target_of
 from logtool.suggest.doubts import Doubt
-from logtool.suggest.frequencies import Frequency, could_be_audio, name_radio, radio_of
+from logtool.suggest.frequencies import Frequency, could_be_audio, lies_above_dials, name_radio, radio_of
 from logtool.suggest.hints import meanings_of, unit_of
-from logtool.suggest.messages import Calls, find_calls
+from logtool.suggest.messages import Calls, find_calls, read_usually
 from logtool.suggest.numbers import Spread, could_be_late, could_be_power, could_be_snr, hinted_number, spread_of
 from logtool.suggest.tables import Column, Table
 from logtool.suggest.times import Times, find_times, name_date_of
@@ -17,7 +17,8 @@ from logtool.suggest.values import given, is_call, is_mode_word, is_number, numb
 from logtool.suggest.wordy import name_words
 
 KEPT_FOR_CHECK = ("other", "report", "drift", "dbfs", "power")
-_MANY_SENDERS = 6
+_VARYING_SENDERS = 2
+_ENOUGH_ROWS = 8
 
 
 @dataclass
@@ -112,12 +113,13 @@ def _frequencies(roles: Roles, columns: list[Column], spreads: dict[int, Spread]
             audio.append(k)
         elif "audio" in means and spreads[k].low >= 0 and spreads[k].high <= 24_000:
             audio.append(k)
+    if len(audio) > 1:
+        audio = [k for k in audio if any(not one.few and lies_above_dials(one, _hz(columns[k])) for one in radio)] or audio
     _name_audio(roles, columns, audio)
     chosen = next((k for k, name in roles.names.items() if target_of(name) == "audio_hz"), None)
     heard_hz: tuple[float | None, ...] | None = None
     if chosen is not None:
-        factor = 1000 if roles.names[chosen] == "audio_khz" else 1
-        heard_hz = tuple(number_of(v) * factor if is_number(v) else None for v in columns[chosen].values)
+        heard_hz = _hz(columns[chosen], 1000 if roles.names[chosen] == "audio_khz" else 1)
     names, doubts = name_radio(radio, heard_hz)
     roles.names |= names
     roles.doubts += doubts
@@ -126,6 +128,10 @@ def _frequencies(roles: Roles, columns: list[Column], spreads: dict[int, Spread]
     for one in radio:
         if one.column not in names:
             roles.notes.setdefault(one.column, "radio frequencies")
+
+
+def _hz(column: Column, factor: int = 1) -> tuple[float | None, ...]:
+    return tuple(number_of(value) * factor if is_number(value) else None for value in column.values)
 
 
 def _name_audio(roles: Roles, columns: list[Column], audio: list[int]) -> None:
@@ -193,20 +199,29 @@ def _take(roles: Roles, columns: list[Column], spreads: dict[int, Spread], candi
 
 
 def _doubt_places(roles: Roles, columns: list[Column]) -> None:
-    """Doubt an audio frequency that is always the same for each sender: it could be a distance."""
+    """Doubt an audio frequency that is not seen to vary for each sender: it could be a distance."""
     audio = next((k for k, name in roles.names.items() if name == "audio_hz"), None)
-    sender = next((k for k, name in roles.names.items() if name == "sender"), None)
-    if audio is None or sender is None or meanings_of(columns[audio].hint) & {"audio", "frequency"} or columns[audio].unit:
+    if audio is None or meanings_of(columns[audio].hint) & {"audio", "frequency"} or columns[audio].unit:
         return
+    sender = next((k for k, name in roles.names.items() if name == "sender"), None)
+    text = next((k for k, name in roles.names.items() if name == "text"), None)
+    if sender is not None:
+        calls = columns[sender].values
+    elif text is not None:
+        calls = [read_usually(value).get("sender", "") for value in columns[text].values]
+    else:
+        calls = []
     by_sender: dict[str, set[str]] = {}
     count: dict[str, int] = {}
-    for call, value in zip(columns[sender].values, columns[audio].values, strict=True):
+    for call, value in zip(calls, columns[audio].values, strict=False):
         if is_call(call):
             by_sender.setdefault(call, set()).add(value)
             count[call] = count.get(call, 0) + 1
-    often = [call for call, n in count.items() if n > 1]
-    if len(often) >= _MANY_SENDERS and all(len(by_sender[call]) == 1 for call in often):
-        roles.doubts.append(Doubt("audio_hz", f"{columns[audio].label} is always the same for a sender: it could be a distance too"))
+    varying = sum(len(by_sender[call]) > 1 for call, n in count.items() if n > 1)
+    if varying < _VARYING_SENDERS:
+        roles.doubts.append(
+            Doubt("audio_hz", f"{columns[audio].label} is not seen to vary for one sender: it could be a distance too")
+        )
 
 
 def _left_out(roles: Roles, columns: list[Column], spreads: dict[int, Spread]) -> None:
@@ -216,7 +231,7 @@ def _left_out(roles: Roles, columns: list[Column], spreads: dict[int, Spread]) -
             continue
         mentioned = any(column.label in str(doubt) for doubt in roles.doubts)
         could = _could_be(roles, column, spreads.get(k))
-        if len(set(values)) == 1 and len(values) > 1 and not could:
+        if len(set(values)) == 1 and not could:
             roles.notes.setdefault(k, f"always {values[0]!r}")
             continue
         if mentioned:
@@ -239,7 +254,7 @@ def _could_be(roles: Roles, column: Column, spread: Spread | None) -> list[str]:
     if means and means <= set(KEPT_FOR_CHECK) - {"report"}:
         return []
     could: list[str] = []
-    always = len(set(given(column.values))) == 1
+    always = len(set(given(column.values))) == 1 and len(column.values) >= _ENOUGH_ROWS
     if (spread is not None and always) or (column.literal and (meanings_of(column.values[0]) or unit_of(column.values[0]))):
         return []
     if spread is not None:

@@ -9,11 +9,11 @@ from logtool.suggest.doubts import Doubt
 from logtool.suggest.fixed import fixed_table
 from logtool.suggest.looking import Look, look_at
 from logtool.suggest.others import find_others
-from logtool.suggest.pairs import pairs_table
-from logtool.suggest.positions import order_table
+from logtool.suggest.pairs import PairsWay, pairs_table
+from logtool.suggest.positions import OrderWay, order_table
 from logtool.suggest.roles import Roles, find_roles
 from logtool.suggest.slots import find_slots
-from logtool.suggest.structured import SEPARATORS, json_table, separated_table
+from logtool.suggest.structured import SEPARATORS, SeparatedWay, json_table, separated_table
 from logtool.suggest.tables import Table, score
 from logtool.suggest.timeforms import shared_forms
 from logtool.suggest.times import date_in_name
@@ -22,6 +22,7 @@ from logtool.suggest.writing import Draft, no_structure, written
 
 _LEAST_SCORE = 1.5
 _FIXED_BONUS = 0.05
+_SIGN_WEIGHT = 1.5
 _LOGTOOL = "# logtool layout"
 
 
@@ -99,7 +100,7 @@ def best_table(texts: list[str]) -> Table | None:
     tables += [pairs_table(texts, sign) for sign in ("=", ":")]
     tables.append(order_table(texts))
     fixed = fixed_table(texts)
-    ranked = [(score(table, len(texts)), -k, table) for k, table in enumerate(tables) if table is not None]
+    ranked = [(_weighed(table, len(texts)), -k, table) for k, table in enumerate(tables) if table is not None]
     best = max(ranked, key=lambda one: one[:2])[2] if ranked else None
     if fixed is not None and (best is None or _is_better(fixed, best, len(texts))):
         best = fixed
@@ -110,9 +111,18 @@ def best_table(texts: list[str]) -> Table | None:
     return best
 
 
+def _weighed(table: Table, total: int) -> float:
+    """Return the score of a table; signs that only separate columns speak for themselves."""
+    way = table.way
+    clear = (isinstance(way, SeparatedWay) and way.separator != ",") or (isinstance(way, PairsWay) and way.sign == "=")
+    return score(table, total) * (_SIGN_WEIGHT if clear else 1.0)
+
+
 def _is_better(fixed: Table, other: Table, total: int) -> bool:
     """Return whether fixed places read more lines, or more of them, than the other way."""
-    return score(fixed, total) > score(other, total) * (1 + _FIXED_BONUS) and len(fixed.rows) > len(other.rows)
+    if len(fixed.rows) < len(other.rows):
+        return False
+    return isinstance(other.way, OrderWay) and score(fixed, total) > score(other, total) * (1 + _FIXED_BONUS)
 
 
 def _draft(look: Look, table: Table, roles: Roles) -> Draft:

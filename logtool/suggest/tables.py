@@ -10,6 +10,7 @@ from functools import lru_cache
 from typing import Protocol
 
 from logtool.suggest.doubts import Doubt
+from logtool.suggest.hints import meanings_of
 from logtool.suggest.timeforms import forms_of, shared_forms
 from logtool.suggest.values import (
     CALLING_WORDS,
@@ -24,6 +25,7 @@ from logtool.suggest.values import (
 )
 
 TYPED = ("time", "number", "call", "locator", "word")
+_NUMBER_FIRST = re.compile(r"[+-]?[0-9]+(?:[.,:][0-9]+)*(?:[ \t]|$)")
 _SPLIT = re.compile(r"[\s,;|\"'=:()\[\]{}]+")
 _DIGITS_ONLY = re.compile(r"[0-9.]+")
 FEW_LOCATORS = 3  # so few different words in many lines are rather modes that look like locators; our choice
@@ -158,11 +160,42 @@ def _differ(table: Table, tag: Column, words: set[str]) -> int:
     return differ
 
 
+def give_names(table: Table, lines: list[str]) -> None:
+    """Give columns that stand in order the names of a line before them that has as many words."""
+    taken = set(table.rows)
+    for i, line in enumerate(lines[: max(table.rows[0], 1)]):
+        words = line.strip(" \t#;*%/|").split()
+        if i in taken or len(words) != len(table.columns) or not all(any(map(str.isalpha, word)) for word in words):
+            continue
+        if sum(bool(meanings_of(word)) for word in words) < 0.5 * len(words):
+            continue
+        for column, word in zip(table.columns, words, strict=True):
+            if not column.literal:
+                column.hint = word
+                column.label += f" ({word})"
+        return
+
+
+def begins_with_numbers(texts: list[str]) -> bool:
+    """Return whether some texts, not nearly all, begin with a number or time: a column that is not always there."""
+    numbers = sum(bool(_NUMBER_FIRST.match(text)) for text in texts)
+    return numbers > 0.05 * len(texts)
+
+
+def _points(column: Column) -> float:
+    kind = column.kind
+    if column.literal:
+        return 0.0
+    if kind == "text":
+        return 0.0 if begins_with_numbers(column.values) else 0.6
+    return 1.0 if kind in TYPED else 0.0
+
+
 def score(table: Table, total: int) -> float:
     """Return how well a table explains a sample: typed columns, weighed by its share of the lines."""
     if not table.rows:
         return 0.0
-    points = sum(0.0 if column.literal else 1.0 if column.kind in TYPED else 0.6 if column.kind == "text" else 0.0 for column in table.columns)
+    points = sum(_points(column) for column in table.columns)
     whole = len({value for column in table.columns for value in column.values}) > 1
     return points * (len(table.rows) / total) ** 0.5 if whole else 0.0
 

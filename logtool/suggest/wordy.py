@@ -44,6 +44,8 @@ def name_words(roles: Roles, columns: list[Column]) -> None:
 def _few(column: Column) -> bool:
     values = given(column.values)
     different = len(set(values))
+    if "mode" in meanings_of(column.hint):
+        return bool(values) and column.kind not in ("number", "time", "text") and different <= FEW_WORDS
     return bool(values) and column.kind not in ("number", "time", "text", "call", "locator") and different <= max(1, min(FEW_WORDS, len(values) / 4))
 
 

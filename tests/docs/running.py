@@ -33,11 +33,16 @@ def logtool(*arguments: str, folder: Path = ROOT) -> subprocess.CompletedProcess
 
 @cache
 def on_terminal(*arguments: str) -> str:
-    """Return what `logtool` prints on a terminal of `WIDTH` columns, colours left out."""
+    """Return what `logtool` prints on a terminal in the project's folder, colours left out."""
+    return on_terminal_in(ROOT, *arguments)
+
+
+def on_terminal_in(folder: Path, *arguments: str) -> str:
+    """Return what `logtool` prints on a terminal of `WIDTH` columns in a folder, colours left out."""
     outer, inner = pty.openpty()
     with subprocess.Popen(
         [sys.executable, "-m", "logtool", *arguments],
-        cwd=ROOT, env=environment(COLUMNS=str(WIDTH), TERM="xterm"), stdin=subprocess.DEVNULL, stdout=inner,
+        cwd=folder, env=environment(COLUMNS=str(WIDTH), TERM="xterm"), stdin=subprocess.DEVNULL, stdout=inner,
         stderr=subprocess.DEVNULL,
     ) as process:  # fmt: skip
         os.close(inner)

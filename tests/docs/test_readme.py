@@ -6,22 +6,18 @@ import doctest
 import re
 import shlex
 import struct
-import subprocess
-import sys
 from pathlib import Path
 
 import pytest
 
-from tests.docs.running import ROOT, SAMPLES, TIMEOUT_S, environment, on_terminal
+from tests.docs.blocks import blocks_of, filled_in, missing_part, put_program, run_in
+from tests.docs.running import ROOT, SAMPLES, on_terminal
 
-README = ROOT / "README.md"
-TEXT = README.read_text(encoding="utf-8")
-BLOCKS = re.findall(r"^( *)```(\w+)\n(.*?)^ *```$", TEXT, flags=re.DOTALL | re.MULTILINE)
-COMMANDS = [
-    line.strip() for _, kind, block in BLOCKS if kind == "bash" for line in block.splitlines() if line.strip()
-]
-OUTPUTS = [block for _, kind, block in BLOCKS if kind == "text"]
-LEFT_OUT = "..."
+TEXT = (ROOT / "README.md").read_text(encoding="utf-8")
+BLOCKS = blocks_of(TEXT)
+COMMANDS = [command for block in BLOCKS for command in block.commands]
+DECODED = ROOT / "docs" / "tutorial" / "night.txt"
+FILLED_IN = 'receiver = "hut"\ndial_hz = 7041500\nplace = "IN66lm"\nantenna = "wire"\n'
 PICTURE_BYTES = 400_000
 PICTURE_SIZE = (1400, 900)
 PNG_SIZE_AT = 16  # width and height in the first chunk: PNG specification, W3C, 11.2.2 (from memory)
@@ -29,36 +25,38 @@ PNG_SIZE_AT = 16  # width and height in the first chunk: PNG specification, W3C,
 
 @pytest.fixture(scope="module")
 def folder(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    """A folder with `sample_logs`, `my_logs` without a setup, and `logtool` on the path."""
+    """A folder with `sample_logs`, `my_logs` without a setup, `my_text.txt`, and `logtool` on the path."""
     place = tmp_path_factory.mktemp("readme")
     (place / "sample_logs").symlink_to(SAMPLES)
     (place / "my_logs").mkdir()
     lines = (SAMPLES / "2026-03-02.log").read_text(encoding="utf-8", errors="replace").splitlines()
     heard = "".join(line + "\n" for line in lines if "\theard\t" in line)
     (place / "my_logs" / "night.log").write_text(heard, encoding="utf-8")
-    program = place / "bin" / "logtool"
-    program.parent.mkdir()
-    program.write_text(f'#!/bin/sh\nexec "{sys.executable}" -m logtool "$@"\n', encoding="utf-8")
-    program.chmod(0o755)
+    (place / "my_text.txt").symlink_to(DECODED)
+    put_program(place)
+    suggest(place)
     return place
 
 
-def run(command: str, folder: Path) -> subprocess.CompletedProcess[str]:
-    path = f"{folder / 'bin'}:{environment()['PATH']}"
-    return subprocess.run(
-        ["bash", "-e", "-c", command], cwd=folder, env=environment(PATH=path), stdin=subprocess.DEVNULL,
-        capture_output=True, text=True, timeout=TIMEOUT_S,
-    )  # fmt: skip
+def suggest(folder: Path) -> str:
+    """Write a suggested recipe to `my.toml` and fill in what no text says; return what was told."""
+    done = run_in(folder, "logtool convert --suggest my_text.txt --out my.toml")
+    recipe = folder / "my.toml"
+    recipe.write_text(filled_in(recipe.read_text(encoding="utf-8"), FILLED_IN), encoding="utf-8")
+    return done.stderr
 
 
 @pytest.mark.parametrize("command", COMMANDS)
 def test_command_runs(command: str, folder: Path) -> None:
     """Every command of the bash blocks; those on maps of logs without a setup tell to use --at."""
-    done = run(command, folder)
+    if "--suggest" in command:
+        assert "recipe written to my.toml" in suggest(folder)
+        return
+    done = run_in(folder, command)
     needs_a_place = command == "logtool map --out my_map.html my_logs"
     if needs_a_place:
         assert "--at" in done.stderr
-        done = run(command + " --at IN66lm", folder)
+        done = run_in(folder, command + " --at IN66lm")
     assert done.returncode == 0, done.stderr
     assert "Traceback" not in done.stderr
     for option in ("--out",):
@@ -67,33 +65,29 @@ def test_command_runs(command: str, folder: Path) -> None:
             assert (folder / words[words.index(option) + 1]).stat().st_size > 0
 
 
+def test_the_recipe_command_is_the_one_that_is_run() -> None:
+    assert [command for command in COMMANDS if "--suggest" in command] == [
+        "logtool convert --suggest my_text.txt --out my.toml"
+    ]
+
+
 def test_output_is_what_the_program_prints() -> None:
-    """All lines shown are printed in that order; a line of three points stands for lines left out."""
-    sampled = [shlex.split(command)[1:] for command in COMMANDS if "sample_logs" in command]
-    tables = [words for words in sampled if words[0] != "map"]
-    printed = [line.rstrip() for words in tables for line in on_terminal(*words).splitlines()]
-    shown = [line.rstrip() for block in OUTPUTS for line in block.splitlines()]
-    assert len(shown) > 20
-    at = 0
-    for line in shown:
-        if line != LEFT_OUT:
-            assert line in printed[at:], f"not printed, or not there: {line}"
-            at = printed.index(line, at) + 1
-
-
-def test_lines_next_to_each_other_are_so_in_the_output() -> None:
-    """Nothing is left out without three points: the block of `reach` but for its gap."""
-    words = next(
-        shlex.split(command)[1:] for command in COMMANDS if command.startswith("logtool reach --from")
-    )
-    printed = "\n".join(line.rstrip() for line in on_terminal(*words).splitlines())
-    for part in OUTPUTS[0].strip("\n").split(f"\n{LEFT_OUT}\n"):
-        assert part in printed
+    """Each block shows, in order, what the commands before it print; three points stand for what is left out."""
+    commands: list[str] = []
+    shown = 0
+    for block in BLOCKS:
+        commands += [command for command in block.commands if "sample_logs" in command]
+        if block.kind == "text":
+            tables = [words for command in commands if (words := shlex.split(command)[1:])[0] != "map"]
+            assert missing_part(block.text, "".join(on_terminal(*words) for words in tables)) is None
+            shown += block.text.count("\n")
+            commands = []
+    assert shown > 20
 
 
 def test_python_example(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.chdir(ROOT)
-    result = doctest.testfile(str(README), module_relative=False, optionflags=doctest.REPORT_NDIFF)
+    result = doctest.testfile(str(ROOT / "README.md"), module_relative=False, optionflags=doctest.REPORT_NDIFF)
     assert result.attempted >= 4
     assert result.failed == 0
 
@@ -110,14 +104,14 @@ def test_make_targets_exist() -> None:
 
 @pytest.mark.parametrize("shell", ["bash", "zsh", "fish"])
 def test_completion_script(shell: str, folder: Path) -> None:
-    done = run(f"_LOGTOOL_COMPLETE={shell}_source logtool", folder)
+    done = run_in(folder, f"_LOGTOOL_COMPLETE={shell}_source logtool")
     assert done.returncode == 0
     assert "_LOGTOOL_COMPLETE" in done.stdout
 
 
 def test_completion_completes(folder: Path) -> None:
     script = 'eval "$(_LOGTOOL_COMPLETE=bash_source logtool)"; COMP_WORDS=(logtool se); COMP_CWORD=1'
-    done = run(f'{script}; _logtool_completion logtool; echo "${{COMPREPLY[@]}}"', folder)
+    done = run_in(folder, f'{script}; _logtool_completion logtool; echo "${{COMPREPLY[@]}}"')
     assert done.stdout.split() == ["senders", "sectors"]
 
 

@@ -7,7 +7,6 @@ from datetime import UTC
 from pathlib import Path
 from typing import Any
 
-from logtool import open_logs
 from logtool.exports.formats import write_as
 from logtool.records.opening import open_with
 from logtool.records.privacy import Privacy
@@ -22,7 +21,7 @@ NUMBERS = ("audio_hz", "snr_db", "late_s", "power_dbm")
 STORY = [
     setup("2026-03-01T18:00:00Z", "JN58td", "wire"),
     watch("2026-03-01T19:00:00Z", 3600),
-    heard("2026-03-01T18:10:00Z", "Q1ABC", locator="JO62", audio_hz="1503.5", snr_db="-12", text="=1+1,\"x\""),
+    heard("2026-03-01T18:10:00Z", "Q1ABC", locator="JO62", snr_db="-12", text="=1+1,\"x\"", more="sure=0.5"),
     heard("2026-03-01T18:10:00Z", "q1abc/p", locator="jo62QM12ab", snr_db="3.5", addressee="Q2XYZ", power_dbm="37"),
     heard("2026-03-01T19:20:00.25Z", "Q1ABC", snr_db="-7.250", text="<EOR> gr\u00fc\u00dfe \\\\ \U0001f4fb \\t73"),
     heard("2026-03-01T19:21:00Z", "", text="TNX", more="sure=0.4; path=a\\b \u00fc"),
@@ -34,7 +33,7 @@ STORY = [
     note("2026-03-01T21:15:00Z"),
     stop("2026-03-01T22:00:00Z"),
     heard("2026-03-01T18:05:00Z", "Q1ABC", receiver="islet", locator="JO62"),
-    heard("2026-03-01T18:10:00Z", "Q1ABC", locator="JO62", audio_hz="1503.5", snr_db="-12", text="=1+1,\"x\""),
+    heard("2026-03-01T18:10:00Z", "Q1ABC", locator="JO62", snr_db="-12", text="=1+1,\"x\"", more="sure=0.5"),
 ]  # fmt: skip
 
 
@@ -82,11 +81,3 @@ def export(name: str, path: Path, *, privacy: Privacy | None = None, **words: An
     options = OpenOptions(privacy=privacy or Privacy(), others_too=True)
     with open_with((path,), None, None, options) as logs:
         return exported(name, logs, **words)
-
-
-def receptions(path: Path, **words: Any) -> list[bytes]:
-    """The receptions of a log by the slow reader."""
-    return [raw for raw in raw_records(path) if b"\theard\t" in raw]
-
-
-__all__ = ["export", "exported", "open_logs", "raw_records", "receptions", "typed", "write_log"]

@@ -135,7 +135,15 @@ def test_there_and_back_is_the_same_lines(tmp_path: Path) -> None:
 
 def test_there_and_back_gives_the_same_places(tmp_path: Path) -> None:
     """Each reception of the sample has its antenna, place, distance and bearing again."""
-    columns = ["time", "sender", "antenna", "receiver_locator", "sender_locator", "distance_km", "bearing_deg"]
+    columns = [
+        "time",
+        "sender",
+        "antenna",
+        "receiver_locator",
+        "sender_locator",
+        "distance_km",
+        "bearing_deg",
+    ]
     from logtool import receptions
 
     with open_logs(ROOT / "sample_logs") as logs:

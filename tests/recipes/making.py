@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 from datetime import datetime, timedelta
 from random import Random
 
-from tests.recipes.comparing import recipe, rule
+from tests.recipes.comparing import recipe, rule, toml
 
 ZONES = ["UTC", "UTC", "Europe/Berlin", "America/St_Johns", "Australia/Lord_Howe"]
 # Shortly before midnight, a month's end, the 29th of February, New Year, and changes of the clocks.
@@ -75,6 +75,7 @@ FOR_KIND = {
 NEEDS = {"watch": "on_s", "noise": "dbfs"}
 WAYS = [",", ";", "\t", "|", ".", "space", "fixed", "json", "pattern"]
 WIDTH = 22
+PATTERNS = ["CQ {sender} [{locator}]", "{addressee} {sender} [{locator}] {power_dbm} ...", "de {sender} ..."]
 
 
 @dataclass
@@ -184,7 +185,7 @@ def made_recipe(rng: Random) -> tuple[str, list[Kind]]:
         top += "[values.mode]\n'~' = 'KB15'\n'#' = ''\n"
     if rng.random() < 0.7:
         top += "[message]\n" + rng.choice(["", "never_locators = ['JN58', 'rr73']\n"])
-        top += rng.choice(["", "patterns = ['CQ {sender} [{locator}]', '{addressee} {sender} {power_dbm}|RR73 ...']\n"[:44] + "]\n"])
+        top += rng.choice(["", f"patterns = {toml(PATTERNS)}\n"])
     constants = "[constants]\nreceiver = 'hut'\n" + rng.choice(
         ["dial_hz = 7041500\n", "dial_mhz = 7.0415\n", "dial_khz = '7041.5'\nmode = 'KB'\n"]
     )

@@ -113,7 +113,7 @@ class SlowRecipe:
         for piece, pattern in rule.get("where", {}).items():
             if pieces[piece] is None or not re.fullmatch(pattern, pieces[piece].strip(" \t")):
                 return False
-        if "time" not in pieces or rule["kind"] in ("carry", "skip"):
+        if "time" not in pieces:
             return True
         if "fixed" in rule:  # nothing else tells such lines from others
             return self._time(rule, pieces) is not None

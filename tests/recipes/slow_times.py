@@ -71,6 +71,10 @@ def _by_directives(text: str, form: str) -> Written | None:
         at = datetime.strptime(text, form)
     except ValueError:
         return None
+    if "%j" in form and "366" in text and at.timetuple().tm_yday != 366:  # it would go on into the next year
+        return None
+    if re.search("%[YymdjHIMSf]%[YymdjHIMSf]", form) and not full_length(text, form, at):
+        return None
     if at.tzinfo is not None:
         return Written(instant=at.astimezone(UTC))
     if has_year:
@@ -78,6 +82,12 @@ def _by_directives(text: str, form: str) -> Written | None:
     if has_day:
         return Written(yearless=at)
     return Written(of_day=at - datetime(1900, 1, 1))
+
+
+def full_length(text: str, form: str, at: datetime) -> bool:
+    """Return whether digits that nothing separates are all there; only their fraction may be shorter."""
+    whole = len(at.strftime(form))
+    return len(text) == whole or ("%f" in form and whole - 5 <= len(text) <= whole)
 
 
 def written_date(text: str, form: str) -> date | None:
@@ -88,7 +98,8 @@ def written_date(text: str, form: str) -> date | None:
         elif form.startswith("unix"):
             seconds = Decimal(text) / (1 if form == "unix_s" else 1000)
             return (EPOCH + timedelta(seconds=int(seconds))).date()
-        return datetime.strptime(text, form).date()
+        at = datetime.strptime(text, form)
+        return None if re.search("%[Yymdj]%[Yymdj]", form) and not full_length(text, form, at) else at.date()
     except (ValueError, ArithmeticError):
         return None
 
@@ -126,18 +137,17 @@ class Clock:
         return at
 
     def _with_day(self, of_day: timedelta) -> datetime | None:
+        rise = timedelta() if self._last_of_day is None else of_day - self._last_of_day
+        self._last_of_day = of_day
+        days = 0
+        if rise < -NEW_DAY:
+            days = 1
+        elif rise < timedelta() or rise > DAY - OVER_MIDNIGHT:
+            self.steps += 1
+            days = 0 if rise < timedelta() else -1
         if self._day is None:
             return None
-        if self._last_of_day is not None:
-            rise = of_day - self._last_of_day
-            if rise < -NEW_DAY:
-                self._day += DAY
-            elif rise > DAY - OVER_MIDNIGHT:
-                self._day -= DAY
-                self.steps += 1
-            elif rise < timedelta():
-                self.steps += 1
-        self._last_of_day = of_day
+        self._day += days * DAY
         return datetime.combine(self._day, datetime.min.time()) + of_day
 
     def _with_year(self, yearless: datetime) -> datetime | None:

@@ -6,6 +6,7 @@ import gzip
 import hashlib
 import resource
 import time
+from itertools import pairwise
 from pathlib import Path
 
 import pytest
@@ -20,13 +21,16 @@ from logtool.records.judge import Record, judge
 from logtool.records.scan import Scan, ScanOptions
 from logtool.records.sources import Source
 from tests.places.sources import read
+from tests.records.slow_reader import COLUMNS
 
 ADIF = read("adif.toml")
 WHEN = "<QSO_DATE:8>20260301<TIME_ON:6>181015<FREQ:8>7.075500"
 ENTRY = f"<CALL:5>Q1ABC{WHEN}"
 
 
-def scanned(data: bytes, tmp_path: Path, name: str = "a.adi", *, anyway: bool = False) -> tuple[Scan, list[bytes]]:
+def scanned(
+    data: bytes, tmp_path: Path, name: str = "a.adi", *, anyway: bool = False
+) -> tuple[Scan, list[bytes]]:
     source, path = tmp_path / name, tmp_path / "lines"
     source.write_bytes(data)
     path.unlink(missing_ok=True)
@@ -43,10 +47,7 @@ def columns(entry: str, tmp_path: Path) -> dict[str, str]:
     _, (line,) = scanned(f"{ENTRY}{entry}<EOR>".encode(), tmp_path)
     record = judge(line)
     assert isinstance(record, Record), record
-    names = (
-        "time kind receiver dial_hz audio_hz snr_db late_s mode sender addressee locator power_dbm text more".split()
-    )
-    return {name: value for name, value in zip(names, record.fields, strict=True) if value}
+    return {name: value for name, value in zip(COLUMNS, record.fields, strict=True) if value}
 
 
 BARE = {
@@ -74,7 +75,9 @@ BETWEEN = st.text(st.sampled_from(" \r\n:>x5"), max_size=4).map(str.encode)
     st.lists(st.lists(st.tuples(NAMES, DATA, BETWEEN), max_size=4), max_size=4),
     st.lists(st.integers(0, 400), max_size=6),
 )
-def test_lengths_count_whatever_the_data(entries: list[list[tuple[str, bytes, bytes]]], cuts: list[int]) -> None:
+def test_lengths_count_whatever_the_data(
+    entries: list[list[tuple[str, bytes, bytes]]], cuts: list[int]
+) -> None:
     text, wanted = b"", []
     for fields in entries:
         held: dict[str, str] = {}
@@ -85,12 +88,13 @@ def test_lengths_count_whatever_the_data(entries: list[list[tuple[str, bytes, by
         text += b"<eor>"
         wanted.append(AdiEntry(held, whole=True))
     bounds = sorted({0, len(text), *(cut for cut in cuts if cut < len(text))})
-    blocks = [text[a:b] for a, b in zip(bounds, bounds[1:], strict=False)]
+    blocks = [text[a:b] for a, b in pairwise(bounds)]
     assert list(adi_entries(blocks, {"CALL", "MODE", "APP_LOGTOOL_TEXT"})) == wanted
 
 
 LAYOUT_TEXT = st.lists(
-    st.sampled_from(["\\\\", "\\t", "\\n", "\\r"]) | st.characters(exclude_categories=["Cs", "Cc"], exclude_characters="\\")
+    st.sampled_from(["\\\\", "\\t", "\\n", "\\r"])
+    | st.characters(exclude_categories=["Cs", "Cc"], exclude_characters="\\")
 ).map("".join)
 
 
@@ -106,7 +110,9 @@ def test_more_comes_back(more: str) -> None:
     assert more_of_ascii(ascii_more(more)) == more
 
 
-@pytest.mark.parametrize("escape", ["\\u0009", "\\u000a", "\\u0041", "\\ud800", "\\U00110000", "\\Uffffffff", "\\u12"])
+@pytest.mark.parametrize(
+    "escape", ["\\u0009", "\\u000a", "\\u0041", "\\ud800", "\\U00110000", "\\Uffffffff", "\\u12"]
+)
 def test_escapes_that_are_none_stay(escape: str) -> None:
     assert text_of_ascii(escape) == more_of_ascii(escape) == escape
 
@@ -136,7 +142,10 @@ FOREIGN = [
     ("<RX_PWR:3>100", {"power_dbm": "50"}),
     ("<RX_PWR:1>0", {}),
     ("<RX_PWR:4>much", {}),
-    ("<APP_LOGTOOL_DIAL_HZ:7>7074000<APP_LOGTOOL_AUDIO_HZ:4>1500", {"dial_hz": "7074000", "audio_hz": "1500"}),
+    (
+        "<APP_LOGTOOL_DIAL_HZ:7>7074000<APP_LOGTOOL_AUDIO_HZ:4>1500",
+        {"dial_hz": "7074000", "audio_hz": "1500"},
+    ),
     ("<APP_LOGTOOL_TIME:23>2026-03-01T18:10:15.25Z", {"time": "2026-03-01T18:10:15.25Z"}),
     ("<COMMENT:9>say <EOR>", {}),
 ]
@@ -225,7 +234,13 @@ def test_place_and_antenna_become_setups_in_order_of_time(tmp_path: Path) -> Non
         tmp_path,
     )
     told = [
-        (number, record.field("receiver"), record.field("time")[11:16], record.field("locator"), record.keys["antenna"])
+        (
+            number,
+            record.field("receiver"),
+            record.field("time")[11:16],
+            record.field("locator"),
+            record.keys["antenna"],
+        )
         for number, record in scan.setups
     ]
     assert told == [
@@ -267,7 +282,9 @@ def test_packed_files_and_digests(tmp_path: Path) -> None:
     ],
     ids=lambda value: str(value[:12]) if isinstance(value, bytes) else "",
 )
-def test_hostile_files_cost_no_time_and_no_memory(data: bytes, lines: int, refused: bool, tmp_path: Path) -> None:
+def test_hostile_files_cost_no_time_and_no_memory(
+    data: bytes, lines: int, refused: bool, tmp_path: Path
+) -> None:
     before_kb = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss
     start_s = time.process_time()
     scan, found = scanned(data, tmp_path)

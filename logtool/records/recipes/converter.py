@@ -125,9 +125,11 @@ class Converter:
             self._connection.execute(f"CREATE OR REPLACE TEMP TABLE said AS {said_sql(self.recipe)}")
         for target in self._carried:
             self._make_carried(target)
+        has_escapes = b"\\" in prepared.block and any(rule.form.json for rule in self.recipe.rules)
+        has_control = prepared.has_control or has_escapes
         made = made_sql(self.recipe, self._own, self._constants, has_said=has_said)
         self._connection.execute(
-            f"CREATE OR REPLACE TEMP TABLE made AS {guarded_sql(made, has_control=prepared.has_control)}"
+            f"CREATE OR REPLACE TEMP TABLE made AS {guarded_sql(made, has_control=has_control)}"
         )
         self._note_earliest()
         if self.recipe.time_step_s:

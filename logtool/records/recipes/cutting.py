@@ -5,7 +5,7 @@ from __future__ import annotations
 from logtool.records.quick import sql_text
 from logtool.records.recipes.names import target_of
 from logtool.records.recipes.patterns import groups_of
-from logtool.records.recipes.recipe import BAD_ENCODING, NO_RULE, SPACE, Recipe, Rule
+from logtool.records.recipes.recipe import BAD_ENCODING, NO_RULE, SKIP, SPACE, Recipe, Rule
 from logtool.records.recipes.timeforms import date_sql, time_sql
 from logtool.records.recipes.values import (
     BLANKS,
@@ -22,6 +22,7 @@ BLANK, NONE, ENCODING, SKIPPED, HEADER = -1, -2, -3, -4, -5
 REASON_OF = {NONE: NO_RULE, ENCODING: BAD_ENCODING}
 NO_COLUMN = "''"  # SQL for a piece whose column this file does not have
 _ASSISTED = "assisted"
+_WHOLE = "_whole"  # names the whole line among a pattern's groups, and no piece
 _ANY_BLANKS = r"[ \t]+"
 
 
@@ -110,14 +111,15 @@ class _Cut:
             self._raw = {piece: f"{name}.{column(piece)}" for piece in spans}
         else:
             paths = [sql_text("$" + "".join(f'."{part}"' for part in path)) for path in form.json.values()]
-            self.sql = f"CASE WHEN json_valid(line) THEN json_extract_string(line, [{', '.join(paths)}]) END"
+            is_object = f"starts_with(ltrim(line, {BLANKS}), '{{') AND json_valid(line)"
+            self.sql = f"CASE WHEN {is_object} THEN json_extract_string(line, [{', '.join(paths)}]) END"
             self.holds = f"{name} IS NOT NULL"
             self._raw = {piece: f"{name}[{i}]" for i, piece in enumerate(form.json, 1)}
 
     def _cut_by_pattern(self, name: str, pattern: str, groups: list[str]) -> None:
-        listed = ", ".join(sql_text(group) for group in ["whole_line", *groups])
+        listed = ", ".join(sql_text(group) for group in [_WHOLE, *groups])
         self.sql = f"regexp_extract(line, {sql_text(f'^({pattern})$')}, [{listed}])"
-        self.holds = f"{name}.whole_line <> ''"
+        self.holds = f"{name}.{_WHOLE} <> ''"
         self._raw = {group: f"{name}.{column(group)}" for group in groups}
 
     def _cut_by_blanks(self, name: str, columns: list[str], *, more: bool) -> None:
@@ -136,7 +138,7 @@ def _split_sql(separator: str) -> str:
     """Return SQL that splits a line at a character, fields in double quotes after RFC 4180."""
     escaped = "\\" + separator if separator in "|.^$*+?()[]{}\\" else separator
     in_class = "\\" + separator if separator in "^]\\-" else separator
-    field = f'{escaped}("(?:[^"]|"")*"|[^{in_class}]*)'
+    field = f'{escaped}("(?:[^"]|"")*"|(?:[^"{in_class}][^{in_class}]*)?)'
     quoted = f"{sql_text(separator)} || line"
     return f"""CASE WHEN NOT contains(line, '"') THEN string_split(line, {sql_text(separator)})
         WHEN regexp_full_match({quoted}, {sql_text(f"({field})*")}) THEN list_transform(
@@ -172,7 +174,7 @@ def _time_of(k: int, rule: Rule) -> tuple[str | None, str | None]:
 
 
 def _day_of(k: int, rule: Rule) -> str | None:
-    if "date" not in rule.pieces or rule.date_form is None:
+    if "date" not in rule.pieces or rule.date_form is None or rule.kind == SKIP:
         return None
     return date_sql(_cleaned(k, "date"), rule.date_form)
 

@@ -9,7 +9,7 @@ from typing import Any
 
 from logtool.records.recipes.patterns import fault_of
 from logtool.records.recipes.recipe import RecipeError
-from logtool.records.recipes.timeforms import form_fault
+from logtool.records.recipes.timeforms import date_fault, time_fault
 
 _NEEDED = object()
 _WORDS = {str: "a text", int: "a whole number", bool: "true or false", dict: "a table", list: "a list"}
@@ -124,10 +124,17 @@ class Fields:
             self.check_pattern(key, pattern)
         return patterns
 
-    def time_form(self, key: str, default: str | None) -> str | None:
-        """Return the form of a time or date."""
-        form: str | None = self.take(key, str, default)
-        if form is not None and (fault := form_fault(form)):
+    def time_form(self, key: str, default: str) -> str:
+        """Return the form of a time."""
+        form: str = self.take(key, str, default)
+        if fault := time_fault(form):
+            raise self.error(key, f"{form!r}: {fault}")
+        return form
+
+    def date_form(self, key: str) -> str | None:
+        """Return the form of a date, or None where it is not given."""
+        form: str | None = self.take(key, str, None)
+        if form is not None and (fault := date_fault(form)):
             raise self.error(key, f"{form!r}: {fault}")
         return form
 

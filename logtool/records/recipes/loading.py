@@ -9,9 +9,9 @@ import tomllib
 from pathlib import Path
 
 from logtool.errors import FileError
-from logtool.records.layout import KEY_FORM, KINDS
+from logtool.records.layout import KEY_FORM, KINDS, NUMBER_FORM
 from logtool.records.recipes.fields import Fields
-from logtool.records.recipes.names import PIECES, target_of
+from logtool.records.recipes.names import NUMBER_TARGETS, PIECES, target_of
 from logtool.records.recipes.patterns import groups_of, template_pattern
 from logtool.records.recipes.recipe import (
     CARRY,
@@ -24,6 +24,7 @@ from logtool.records.recipes.recipe import (
     Recipe,
     Rule,
 )
+from logtool.records.recipes.values import constant_value
 
 DEFAULT_MESSAGES = (  # common practice, no source: the station called first, the caller second
     "CQ|QRZ [{word}] [DE] {sender} [{locator}] ...",
@@ -36,6 +37,15 @@ NEVER_LOCATORS = ("RR73",)
 _FORMS = ("pattern", "separator", "fixed", "json")
 _RULE_NAME = r"[a-z][a-z0-9-]{0,31}"
 _MOST_KIB = 1024
+_IN_USE = (
+    "i",
+    "rule",
+    "stamp_us",
+    "lacking",
+    "day_us",
+    "time_us",
+    "whole_name",
+)  # columns of the engine's tables
 
 
 def load_recipe(path: str | os.PathLike[str]) -> Recipe:
@@ -76,7 +86,7 @@ def recipe_of(text: str, name: str) -> Recipe:
         raise top.error("recipe", f"write recipe = {RECIPE_VERSION}, the version that this program reads")
     keep = top.words("keep")
     for word in keep:
-        if not re.fullmatch(KEY_FORM, word) or word in PIECES:
+        if not re.fullmatch(KEY_FORM, word) or word in PIECES or word in _IN_USE:
             raise top.error(
                 "keep", f"{word!r} is no name for `more`: small letters, digits, _; not one in use"
             )
@@ -102,7 +112,7 @@ def recipe_of(text: str, name: str) -> Recipe:
         keep=keep,
         constants=_constants(top.table("constants"), keep),
         name_pattern=name_pattern,
-        name_date_form=named.take("date_form", str, None),
+        name_date_form=named.date_form("date_form"),
         values=_values(top, keep, rules),
         messages=None if message is None else _messages(message),
         never_locators=NEVER_LOCATORS if message is None else message.words("never_locators", NEVER_LOCATORS),
@@ -117,8 +127,9 @@ def _encoding(top: Fields) -> str:
     encoding: str = top.take("encoding", str, "utf-8")
     try:
         info = codecs.lookup(encoding)
-        "".encode(info.name)  # some codecs are of other things than text
-    except (LookupError, UnicodeError) as error:
+        "".encode(info.name)  # some codecs are of other things than text, or stop at what is not theirs
+        codecs.getincrementaldecoder(info.name)("replace").decode(bytes(range(256)), final=True)
+    except (LookupError, ValueError) as error:
         raise top.error(
             "encoding", f"there is no encoding {encoding!r}; common are utf-8, utf-16, latin-1, cp1252"
         ) from error
@@ -168,6 +179,9 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
     twice = sorted({piece for piece in pieces if pieces.count(piece) > 1})
     if twice:
         raise fields.error(given[0], f"{twice[0]!r} stands twice; give one of them another name")
+    for piece in pieces:
+        if not re.fullmatch(KEY_FORM, piece):
+            raise fields.error(given[0], f"{piece!r}: a piece's name has small letters, digits and _")
     where = fields.strings("where")
     for piece, pattern in where.items():
         fields.check_pattern("where", pattern)
@@ -182,7 +196,7 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
     if kind == CARRY and not carry:
         raise fields.error(given[0], "a line of the kind `carry` needs a piece that has a name")
     time_form = fields.time_form("time_form", "iso")
-    date_form = fields.time_form("date_form", None)
+    date_form = fields.date_form("date_form")
     if "date" in wanted and date_form is None:
         raise fields.error(
             given[0], 'it has a piece `date`: say how it is written, like date_form = "%Y-%m-%d"'
@@ -190,7 +204,7 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
     if kind not in (CARRY, SKIP) and "time" not in wanted:
         raise fields.error(given[0], f"a line of the kind `{kind}` needs a piece `time`")
     constants = _constants(fields.table("constants"), keep)
-    return Rule(name, kind, form, wanted, where, time_form or "iso", date_form, carry, constants)
+    return Rule(name, kind, form, wanted, where, time_form, date_form, carry, constants)
 
 
 def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
@@ -204,6 +218,9 @@ def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
         paths = fields.strings("json")
         if not paths:
             raise fields.error("json", "it names no piece")
+        for path in paths.values():
+            if '"' in path or not all(path.split(".")):
+                raise fields.error("json", f"{path!r}: names with dots between them, none empty, no quotes")
         return Form(json={name: tuple(path.split(".")) for name, path in paths.items()}), tuple(paths)
     separator = fields.take("separator", str)
     if separator != SPACE and len(separator) != 1:
@@ -262,9 +279,22 @@ def _constants(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
             )
             raise fields.error(name, f"{name!r} cannot be a constant: {hint}")
         _check_names(fields, name, [name], keep)
-        value = fields.take(name, (str, int, float))
-        constants[name] = str(value)
+        value = str(fields.take(name, (str, int, float)))
+        if target_of(name) in NUMBER_TARGETS and not _is_number(constant_value(name, value)[1]):
+            raise fields.error(name, f"{value!r} is no number that can be used")
+        _check_clean(fields, name, value)
+        constants[name] = value
     return constants
+
+
+def _is_number(text: str) -> bool:
+    return re.fullmatch(NUMBER_FORM, text) is not None
+
+
+def _check_clean(fields: Fields, key: str, text: str) -> None:
+    """Stop where a text would break the line that it goes into."""
+    if not text.isprintable():
+        raise fields.error(key, f"{text!r} has a character that no value can hold, like a TAB")
 
 
 def _values(top: Fields, keep: tuple[str, ...], rules: tuple[Rule, ...]) -> dict[str, dict[str, str]]:
@@ -274,6 +304,8 @@ def _values(top: Fields, keep: tuple[str, ...], rules: tuple[Rule, ...]) -> dict
         if not any(name in rule.pieces for rule in rules):
             raise table.error(name, f"no line has a piece {name!r}")
         values[name] = table.strings(name)
+        for text in values[name].values():
+            _check_clean(table, name, text)
     return values
 
 

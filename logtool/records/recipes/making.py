@@ -174,8 +174,11 @@ def _out(recipe: Recipe, given: list[str]) -> str:
         f"CASE rule {kinds} END",
         *(f"coalesce({column(name)}, '')" for name in COLUMN_NAMES[2:-1]),
     ]
+    # A value with `; ` in it would pass for two keys: it is made one that the judge does not take.
     keys = [
-        f"{sql_text(name + '=')} || {column(name)}" for name in (*KNOWN_KEYS, *recipe.keep) if name in given
+        f"{sql_text(name + '=')} || replace({column(name)}, '; ', ';;')"
+        for name in (*KNOWN_KEYS, *recipe.keep)
+        if name in given
     ]
     more = f"concat_ws('; ', {', '.join(keys)})" if keys else "''"
     line = f"concat_ws(chr(9), {', '.join(fields)}, {more})"

@@ -25,7 +25,7 @@ ANYTHING = "..."
 def groups_of(pattern: str) -> list[str]:
     """Return the names of a pattern's groups in order; of those without a name an empty text.
 
-    >>> groups_of(r"(?P<date>\\d{8}) (a|b)[(](?:c)\\(")
+    >>> groups_of(r"(?P<date>\\d{8}) (a|b)[[:alpha:](](?:c)\\(")
     ['date', '']
     """
     names = []
@@ -39,7 +39,9 @@ def groups_of(pattern: str) -> list[str]:
         if pattern[i] == "\\":
             i += 2
             continue
-        if in_class:
+        if in_class and pattern.startswith("[:", i):
+            i = max(i, pattern.find(":]", i) + 1)
+        elif in_class:
             in_class = pattern[i] != "]"
         elif pattern[i] == "[":
             in_class = True
@@ -47,7 +49,7 @@ def groups_of(pattern: str) -> list[str]:
             i += pattern[i : i + 1] == "]"
             continue
         elif pattern[i] == "(":
-            named = re.match(r"\(\?P<([A-Za-z0-9_]+)>", pattern[i:])
+            named = re.match(r"\(\?P<([^>]+)>", pattern[i:])
             if named:
                 names.append(named[1])
             elif pattern[i + 1 : i + 2] != "?":
@@ -94,7 +96,7 @@ def template_pattern(template: str) -> str:
     Examples
     --------
     >>> template_pattern("A|B {report_db} ...")
-    '(?:A|B) +(?P<report_db>[+-][0-9]{1,2})(?: .*)?'
+    '(?:A|B) +R?(?P<report_db>[+-][0-9]{1,2})(?: .*)?'
     >>> template_pattern("[{word}] C")
     '(?:(?P<word>(?:[A-Z]{1,4}|[0-9]{3})) +)?C'
     """
@@ -128,5 +130,5 @@ def _item_pattern(item: str) -> str:
         return f"{prefix}(?P<{slot[1]}>{SLOTS[slot[1]]})"
     if re.search(r"[{}\[\]]", item):
         raise ValueError(f"{item!r}: a part in {{}} or [] stands alone between blanks")
-    words = "|".join(re.escape(word) for word in item.split("|"))
+    words = "|".join(re.escape(word.upper()) for word in item.split("|"))  # messages are read in upper case
     return f"(?:{words})" if "|" in item else words

@@ -26,8 +26,9 @@ class Steps:
             SELECT i, out, time_us, sum(new) OVER (ORDER BY i ROWS UNBOUNDED PRECEDING) AS step FROM (
                 SELECT i, out, time_us, (time_us IS DISTINCT FROM lag(time_us) OVER (ORDER BY i))::INTEGER AS new
                 FROM made WHERE time_us IS NOT NULL AND NOT starts_with(out, '!'))""")
-        first = self._connection.execute("SELECT arg_min(time_us, i), max(step) FROM stepped").fetchone()
-        if first is None or first[1] is None:
+        # `fetchall`, since a result that is not read to its end would keep the connection busy.
+        first = self._connection.execute("SELECT arg_min(time_us, i), max(step) FROM stepped").fetchall()[0]
+        if first[1] is None:
             return
         goes_on = self._time_us == first[0]
         before = self._copies if goes_on else {}

@@ -19,10 +19,11 @@ ABSOLUTE, LOCAL, YEARLESS, OF_DAY = (
     2,
     3,
 )  # what a time lacks: nothing, its zone, its year too, its date too
-_ISO = r"[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(:[0-9]{2}([.,][0-9]{1,6})?)? ?(Z|[+-][0-9]{2}(:?[0-9]{2})?)?"
+_ISO = r"[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(:[0-9]{2}([.,][0-9]{1,6})?)?(Z|[+-][0-9]{2}(:?[0-9]{2})?)?"
 _ISO_DATE = "%Y-%m-%d"
 _LEAP_YEAR = "2000"  # stands in for a year that is not written, so that 29 February can be read
 _FRACTION_DIGITS = 6
+_FAR_US = 253_402_300_800_000_000  # the year 10000; the engine cannot count much further
 _DIRECTIVE = re.compile(r"%(.)", re.DOTALL)
 _DIGITS = "YymdjHIMSf"
 
@@ -60,7 +61,34 @@ def form_fault(form: str) -> str | None:
         return "it has a day and no month"
     if "j" in found and not ({"Y", "y"} & set(found)):
         return "%j, the day of the year, needs a year"
+    if "z" in found and not (has_hour and has_date and {"Y", "y"} & set(found)):
+        return "%z, the offset from UTC, needs a date with its year and a time"
     return None
+
+
+def date_fault(form: str) -> str | None:
+    """Return what is wrong with the form of a date that stands alone, or None.
+
+    >>> date_fault("%d.%m.")
+    'a date needs its day and year; one without a year goes into time_form, with its time'
+    """
+    found = set(_DIRECTIVE.findall(form))
+    if form == ISO or form in WORD_FORMS or form_fault(form):
+        return form_fault(form)
+    if not (found & {"d", "j"} and found & {"Y", "y"}):
+        return "a date needs its day and year; one without a year goes into time_form, with its time"
+    return "%z belongs to a time" if "z" in found else None
+
+
+def time_fault(form: str) -> str | None:
+    """Return what is wrong with the form of a time, or None.
+
+    >>> time_fault("%Y-%m-%d")
+    'it has no hour'
+    """
+    if form == ISO or form in WORD_FORMS or form_fault(form):
+        return form_fault(form)
+    return None if {"H", "I"} & set(_DIRECTIVE.findall(form)) else "it has no hour"
 
 
 def lacks(form: str) -> int:
@@ -86,7 +114,9 @@ def time_sql(text: str, form: str) -> tuple[str, str]:
         A form that `form_fault` finds nothing against.
     """
     if form in WORD_FORMS:
-        return f"(try_cast({text} AS DECIMAL(24, 6)) * {WORD_FORMS[form]})::BIGINT", str(ABSOLUTE)
+        number = f"try_cast({text} AS DECIMAL(24, 6))"
+        within = f"abs({number}) < {_FAR_US // WORD_FORMS[form]}"
+        return f"CASE WHEN {within} THEN ({number} * {WORD_FORMS[form]})::BIGINT END", str(ABSOLUTE)
     if form == ISO:
         read = f"epoch_us(try_cast(replace({text}, ',', '.') AS TIMESTAMPTZ))"
         zoned = f"regexp_matches({text}, '(Z|[+-][0-9]{{2}}(:?[0-9]{{2}})?)$')"

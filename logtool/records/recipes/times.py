@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 
@@ -68,12 +69,12 @@ class FileClock:
             Dates that lines give, `NO_TIME` where they give none.
         """
         local_us = np.where(lacking >= 0, stamps_us, NO_TIME)
-        of_day = lacking == OF_DAY
-        if of_day.any() or (days_us != NO_TIME).any():
+        of_day, yearless = lacking == OF_DAY, lacking == YEARLESS
+        has_days = bool((days_us != NO_TIME).any())
+        if has_days or of_day.any():
             local_us[of_day] = self._with_days(lines, of_day, stamps_us, days_us)
-        yearless = lacking == YEARLESS
-        if yearless.any():
-            local_us[yearless] = self._with_years(stamps_us[yearless])
+        if has_days or yearless.any():
+            local_us[yearless] = self._with_years(yearless, stamps_us, days_us)
         known = local_us != NO_TIME
         shifted = known & (lacking != ABSOLUTE)
         utc_us = local_us
@@ -89,8 +90,6 @@ class FileClock:
         """Return times of day with their days: each goes on from the last date that a line gave."""
         given = np.flatnonzero(days_us != NO_TIME)
         at = np.flatnonzero(of_day)
-        if len(given):
-            self._year, self._last_in_year_us = int(_years(days_us[given[-1:]])[0]), None
         if not len(at):
             self._day_us, self._last_of_day_us = int(days_us[given[-1]]), None
             return stamps_us[at]
@@ -130,9 +129,21 @@ class FileClock:
             largest_s = float(-rise_us[steps].min() / SECOND_US)
             self.notes.largest_step_s = max(self.notes.largest_step_s, largest_s)
 
-    def _with_years(self, stamps_us: np.ndarray) -> np.ndarray:
-        """Return times that were read in the year 2000 with their years."""
-        if self._year is None:
+    def _with_years(self, yearless: np.ndarray, stamps_us: np.ndarray, days_us: np.ndarray) -> np.ndarray:
+        """Return times that were read in the year 2000 with their years: each goes on from the last date given."""
+        given = np.flatnonzero(days_us != NO_TIME)
+        given = given if yearless.any() else given[-1:]
+        starts = [0, *given.tolist(), len(stamps_us)]
+        found = []
+        for k, (start, stop) in enumerate(pairwise(starts)):
+            if k:
+                self._year, self._last_in_year_us = int(_years(days_us[start : start + 1])[0]), None
+            found.append(self._going_on(stamps_us[start:stop][yearless[start:stop]]))
+        return np.concatenate(found)
+
+    def _going_on(self, stamps_us: np.ndarray) -> np.ndarray:
+        """Return times that were read in the year 2000 with their years, from the last year on."""
+        if self._year is None or not len(stamps_us):
             return np.full(len(stamps_us), NO_TIME)
         first = stamps_us[0] if self._last_in_year_us is None else self._last_in_year_us
         rise_us = np.diff(stamps_us, prepend=first)

@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-from decimal import Decimal, InvalidOperation
-from math import log10
+from decimal import ROUND_HALF_UP, Decimal, InvalidOperation
 
 from logtool.records.callsigns import UNRESOLVED
 from logtool.records.quick import sql_text
@@ -82,15 +81,14 @@ def constant_value(piece: str, value: str) -> tuple[str, str]:
         piece not in WATTS and PIECES[piece].factor == "1" and "." not in value
     ):
         return target, value
+    places = "0.001" if piece in WATTS else "1" if target in INTEGER_TARGETS else "0.000001"
     try:
         number = Decimal(value) * Decimal(PIECES[piece].factor)
+        if piece in WATTS:
+            number = 10 * number.log10() + 30
+        return target, f"{number.quantize(Decimal(places), ROUND_HALF_UP).normalize():f}"
     except InvalidOperation:
-        return target, value
-    if piece in WATTS and number > 0:
-        number = Decimal(round(10 * log10(number) + 30, 3))
-    if target in INTEGER_TARGETS:
-        return target, str(round(number))
-    return target, f"{number.normalize():f}"
+        return target, _UNREADABLE[1:-1]
 
 
 def _number_sql(text: str, piece: str, decimal: str) -> str:
