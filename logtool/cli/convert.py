@@ -58,7 +58,8 @@ def command(**words: Any) -> int:
     --suggest and --try help to write a recipe for a text (docs/recipes.md); without them the records are written.
 
     csv, jsonl, parquet and arrow hold each record with the distance to its sender; adi the receptions that name a
-    sender; geojson and kml receivers, senders and paths.
+    sender; geojson and kml receivers, senders and paths. Only these two leave out what was heard with the antenna
+    off.
     """
     from logtool.cli.trying import run_suggest, run_try
     from logtool.tables.chosen import unknown_words

@@ -13,6 +13,7 @@ _MONTH = "(?:Jan|Feb|Mar|Apr|May|Jun|Jul|Aug|Sep|Oct|Nov|Dec)"
 # Times and dates with blanks in them, a number with its unit, then any word without the signs between words.
 _CORE = re.compile(
     rf"""\d{{1,2}}:\d\d(?::\d\d(?:\.\d+)?)?[ ][AaPp][Mm]\b
+    |\d{{1,2}}:\d\d(?::\d\d(?:\.\d+)?)?[ ](?:UTC|GMT|UT|Z)\b
     |{_MONTH}[ ]+\d{{1,2}},?[ ]\d{{4}}[ ]\d{{1,2}}:\d\d(?::\d\d(?:\.\d+)?)?
     |{_MONTH}[ ]+\d{{1,2}}[ ]\d\d:\d\d:\d\d[ ]\d{{4}}\b
     |{_MONTH}[ ]+\d{{1,2}}[ ]\d{{1,2}}:\d\d(?::\d\d(?:\.\d+)?)?

@@ -46,7 +46,11 @@ def fixed_table(lines: list[str]) -> Table | None:
     kinds = [kind_of(tuple(given(row[k] for row in cells)[:300])) for k in range(len(spans))]
     last = len(spans)
     if kinds[-1] in ("text", "other"):  # the last words of messages: what stands before belongs to them
-        while last > 1 and kinds[last - 2] in _MESSAGE_KINDS and not _is_column([row[last - 2] for row in cells]):
+        while (
+            last > 1
+            and kinds[last - 2] in _MESSAGE_KINDS
+            and not _is_column([row[last - 2] for row in cells])
+        ):
             last -= 1
     spans = [*spans[: last - 1], (spans[last - 1][0], 0)]
     everything = [i for i, line in enumerate(lines) if _fits(line, spans, kinds)]
@@ -99,7 +103,10 @@ def _is_column(values: list[str]) -> bool:
 def _starts(lines: list[str]) -> list[int]:
     """Return where columns begin: after a run of places that are blank in nearly all lines."""
     width = max(map(len, lines))
-    blank = [sum(p >= len(line) or line[p] == " " for line in lines) >= _GUTTER_SHARE * len(lines) for p in range(width)]
+    blank = [
+        sum(p >= len(line) or line[p] == " " for line in lines) >= _GUTTER_SHARE * len(lines)
+        for p in range(width)
+    ]
     starts = [p for p in range(width) if not blank[p] and (p == 0 or blank[p - 1])]
     # A column of numbers to the right begins where the longest begins, so all of its places are seen.
     return starts

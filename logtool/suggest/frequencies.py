@@ -69,7 +69,12 @@ def radio_of(k: int, column: Column, *, few: bool | None = None) -> Frequency | 
             sure = True
     if not fitting and not means and min(numbers) >= 1_000_000 and max(numbers) <= _MOST_HZ and few:
         fitting = ["Hz"]
-    if not fitting and means & {"dial", "frequency"} and "audio" not in means and min(numbers) > _AUDIO_TOP_HZ:
+    if (
+        not fitting
+        and means & {"dial", "frequency"}
+        and "audio" not in means
+        and min(numbers) > _AUDIO_TOP_HZ
+    ):
         fitting = ["Hz" if min(numbers) > 1_000_000 else "kHz"]
     if not fitting:
         return None
@@ -110,7 +115,9 @@ def _counts(written: list[str]) -> bool:
     return bool(steps) and steps[1.0] >= 0.9 * (len(numbers) - 1)
 
 
-def name_radio(radio: list[Frequency], audio: tuple[float | None, ...] | None) -> tuple[dict[int, str], list[Doubt]]:
+def name_radio(
+    radio: list[Frequency], audio: tuple[float | None, ...] | None
+) -> tuple[dict[int, str], list[Doubt]]:
     """Return the names of columns of radio frequencies, and the doubts.
 
     Parameters
@@ -141,10 +148,19 @@ def name_radio(radio: list[Frequency], audio: tuple[float | None, ...] | None) -
             )  # fmt: skip
             continue
         if not one.sure:
-            doubts.append(Doubt("dial_hz, audio_hz", f"the unit of the radio frequency is taken as {one.unit} by its size only"))
+            doubts.append(
+                Doubt(
+                    "dial_hz, audio_hz",
+                    f"the unit of the radio frequency is taken as {one.unit} by its size only",
+                )
+            )
         full = f"{name}_{unit}"
         if full in names.values() or any(other.startswith(name) for other in names.values()):
-            doubts.append(Doubt("dial_hz, audio_hz", "there are two columns of radio frequencies; the later is left out"))
+            doubts.append(
+                Doubt(
+                    "dial_hz, audio_hz", "there are two columns of radio frequencies; the later is left out"
+                )
+            )
             continue
         names[one.column] = full
     return names, doubts
@@ -152,7 +168,11 @@ def name_radio(radio: list[Frequency], audio: tuple[float | None, ...] | None) -
 
 def lies_above_dials(radio: Frequency, audio: tuple[float | None, ...]) -> bool:
     """Return whether radio minus audio gives few dials."""
-    dials = [round((rf - af) / 10) for rf, af in zip(radio.hz, audio, strict=True) if rf is not None and af is not None]
+    dials = [
+        round((rf - af) / 10)
+        for rf, af in zip(radio.hz, audio, strict=True)
+        if rf is not None and af is not None
+    ]
     different = len({rf for rf in radio.hz if rf is not None})
     return bool(dials) and len(set(dials)) <= max(1, min(FEW_DIALS * 2, different / 3))
 

@@ -15,8 +15,8 @@ _WORDS = {
     "rf": "rf band_hz",
     "frequency": "freq frequency f hz khz mhz",
     "mode": "mode modulation",
-    "sender": "from sender call callsign de station source src caller dx",
-    "addressee": "to addressee called dest destination target",
+    "sender": "from sender heard call callsign de station source src caller dx",
+    "addressee": "to addressee called calling dest destination target",
     "locator": "locator loc grid square maidenhead qth",
     "power": "power pwr dbm watt watts mw",
     "text": "message msg text decode decoded content payload",
@@ -32,7 +32,18 @@ _WORDS = {
     " duration length cycles errors err bits phase status state channel ch s2n prob",
 }
 _MEANS = {word: name for name, words in _WORDS.items() for word in words.split()}
-_UNITS = {"hz": "Hz", "khz": "kHz", "mhz": "MHz", "db": "dB", "dbm": "dBm", "ms": "ms", "s": "s", "sec": "s", "w": "W", "mw": "mW"}
+_UNITS = {
+    "hz": "Hz",
+    "khz": "kHz",
+    "mhz": "MHz",
+    "db": "dB",
+    "dbm": "dBm",
+    "ms": "ms",
+    "s": "s",
+    "sec": "s",
+    "w": "W",
+    "mw": "mW",
+}
 _UNIT = re.compile(r"dBFS|dBm|dB|[kM]?Hz|mW")
 _WORD = re.compile(r"[A-Za-z]+/[A-Za-z]+|[A-Z]+(?![a-z])|[A-Z]?[a-z]+")
 

@@ -78,11 +78,24 @@ def look_at(path: str | os.PathLike[str]) -> Look:
     for k, raw in enumerate(parts):
         lines += _lines_of(raw, encoding, k, last=whole and k == len(parts) - 1)
     if sum("\r" in line.text for line in lines) > len(lines) / 2:
-        doubts = (*doubts, Doubt("lines", "they end at a carriage return alone, which ends no line here; convert the file first"))
+        doubts = (
+            *doubts,
+            Doubt(
+                "lines",
+                "they end at a carriage return alone, which ends no line here; convert the file first",
+            ),
+        )
     texts = "".join(line.text for line in lines)
     if sum(ord(c) in _CONTROLS for c in texts) > CONTROL_SHARE * len(texts):
         return Look(name, encoding, (), "it holds many control characters, so it is no text")
-    return Look(name, encoding, tuple(lines), "" if lines else "the file has no line with anything on it", doubts, whole)
+    return Look(
+        name,
+        encoding,
+        tuple(lines),
+        "" if lines else "the file has no line with anything on it",
+        doubts,
+        whole,
+    )
 
 
 def _plain_parts(source: Source) -> tuple[list[bytes], bool]:
@@ -118,8 +131,15 @@ def _encoding_of(parts: list[bytes]) -> tuple[str, tuple[Doubt, ...]]:
     joined = b"".join(parts)
     if joined.count(0) > NUL_SHARE * len(joined):
         for encoding, byte in (("utf-16-le", 1), ("utf-16-be", 0)):
-            if first[byte::2].count(0) > 2 * NUL_SHARE * len(first[byte::2]) and not first[1 - byte :: 2].count(0):
-                return encoding, (Doubt("encoding", f"every second byte is zero and there is no byte order mark; read as {encoding}"),)
+            if first[byte::2].count(0) > 2 * NUL_SHARE * len(first[byte::2]) and not first[
+                1 - byte :: 2
+            ].count(0):
+                return encoding, (
+                    Doubt(
+                        "encoding",
+                        f"every second byte is zero and there is no byte order mark; read as {encoding}",
+                    ),
+                )
         return "", ()
     if b"\0" in joined:
         return "", ()

@@ -25,6 +25,7 @@ _GOOD_SHARE = 0.8  # of the messages with call signs have to be of the usual for
 _LEAST_VOTES = 3
 _CLEARLY = 4
 _STRANGE = re.compile(r"[+-]?\d+[.,]\d+|\d{3,}|[A-Za-z_]+=.*|\d+:\d\d.*|[;|].*|.*[;|]|.*\"")
+_STUCK_LOCATOR = re.compile(r"(?:^| )[A-R]{2}[0-9]{2}(?:[A-Xa-x]{2})?[,.;:!?)]")
 _STRANGE_SHARE = 0.3
 _WORDS = re.compile(r"\s+")
 
@@ -56,7 +57,9 @@ def find_calls(columns: list[Column], taken: set[int]) -> Calls:
     found = Calls()
     kinds = {k: column.kind for k, column in enumerate(columns) if k not in taken}
     texts = [k for k, kind in kinds.items() if kind == "text"]
-    named = [k for k in kinds if "text" in meanings_of(columns[k].hint) and any(map(holds_call, columns[k].values))]
+    named = [
+        k for k in kinds if "text" in meanings_of(columns[k].hint) and any(map(holds_call, columns[k].values))
+    ]
     if named:
         text: int | None = named[-1]
     else:
@@ -66,10 +69,19 @@ def find_calls(columns: list[Column], taken: set[int]) -> Calls:
         text = loose[-1]
     if text is not None:
         found.names[text] = "text"
-    _name_locators(found, columns, [
-        k for k, kind in kinds.items()
-        if k != text and ((kind == "locator" and _may_be(columns[k], "locator")) or (kind == "word" and _named_locators(columns[k])))
-    ])
+    _name_locators(
+        found,
+        columns,
+        [
+            k
+            for k, kind in kinds.items()
+            if k != text
+            and (
+                (kind == "locator" and _may_be(columns[k], "locator"))
+                or (kind == "word" and _named_locators(columns[k]))
+            )
+        ],
+    )
     _name_calls(found, columns, [k for k, kind in kinds.items() if kind == "call" and k != text], text)
     if text is not None and any(map(holds_call, columns[text].values)):
         _settle_message(found, columns, columns[text].values)
@@ -95,7 +107,12 @@ def _name_locators(found: Calls, columns: list[Column], candidates: list[int]) -
     if len(varying) == 1:
         found.names[varying[0]] = "locator"
         if not named and len(set(given(columns[varying[0]].values))) <= FEW_LOCATORS:
-            found.doubts.append(Doubt("locator, mode", f"{columns[varying[0]].label} ({quoted(columns[varying[0]].values)}) is taken as the sender's locator; it could be the mode"))
+            found.doubts.append(
+                Doubt(
+                    "locator, mode",
+                    f"{columns[varying[0]].label} ({quoted(columns[varying[0]].values)}) is taken as the sender's locator; it could be the mode",
+                )
+            )
     elif len(named) == 1:
         found.names[named[0]] = "locator"
     elif varying:
@@ -109,7 +126,12 @@ def _name_calls(found: Calls, columns: list[Column], candidates: list[int], text
         if k not in varying:
             found.notes[k] = "always the same call sign: the receiver's own, not the sender's"
             if len(candidates) == 1 and text is None:
-                found.doubts.append(Doubt("sender", f"{columns[k].label} is always {quoted(columns[k].values, 1)}, so not read as the sender"))
+                found.doubts.append(
+                    Doubt(
+                        "sender",
+                        f"{columns[k].label} is always {quoted(columns[k].values, 1)}, so not read as the sender",
+                    )
+                )
     for k in varying:
         for word in CALLING_WORDS:
             if word in columns[k].values:
@@ -126,22 +148,39 @@ def _name_calls(found: Calls, columns: list[Column], candidates: list[int], text
     elif len(varying) == 1:
         if calling:
             found.names[varying[0]] = "addressee"
-            found.doubts.append(Doubt("sender", f"{columns[varying[0]].label} holds {quoted(sorted(CALLING_WORDS & set(columns[varying[0]].values)))}, so it is read as the addressee; no column is the sender's"))
+            found.doubts.append(
+                Doubt(
+                    "sender",
+                    f"{columns[varying[0]].label} holds {quoted(sorted(CALLING_WORDS & set(columns[varying[0]].values)))}, so it is read as the addressee; no column is the sender's",
+                )
+            )
         else:
             found.names[varying[0]] = "sender"
             if columns[varying[0]].hint.strip() and not by_name["sender"] and text is None:
-                found.doubts.append(Doubt("sender", f"{columns[varying[0]].label} is taken as the sender, its name does not say so"))
+                found.doubts.append(
+                    Doubt(
+                        "sender",
+                        f"{columns[varying[0]].label} is taken as the sender, its name does not say so",
+                    )
+                )
     elif len(by_name["sender"]) == 1 and len(varying) == 2:
         found.names[by_name["sender"][0]] = "sender"
         other = next(k for k in varying if k not in by_name["sender"])
         found.names[other] = "addressee"
         if other not in calling:
-            found.doubts.append(Doubt("addressee", f"{columns[other].label} is taken as the addressee because the other column is the sender"))
+            found.doubts.append(
+                Doubt(
+                    "addressee",
+                    f"{columns[other].label} is taken as the addressee because the other column is the sender",
+                )
+            )
     elif len(varying) == 2:
         _order_of_two(found, columns, varying, calling)
     elif varying:
         labels = ", ".join(columns[k].label for k in varying)
-        found.doubts.append(Doubt("sender, addressee", f"NOT SURE which columns are meant: {labels}; none is read"))
+        found.doubts.append(
+            Doubt("sender, addressee", f"NOT SURE which columns are meant: {labels}; none is read")
+        )
     if "addressee" not in found.names.values():
         found.values.pop("addressee", None)
 
@@ -154,7 +193,9 @@ def _order_of_two(found: Calls, columns: list[Column], pair: list[int], calling:
     empty = [k for k in pair if any(not v or v in EMPTY_WORDS for v in columns[k].values)]
     locator = next((k for k, name in found.names.items() if name == "locator"), None)
     if locator is not None:
-        verdict = _by_locators(_Pairs(columns[pair[0]].values, columns[pair[1]].values, columns[locator].values, []))
+        verdict = _by_locators(
+            _Pairs(columns[pair[0]].values, columns[pair[1]].values, columns[locator].values, [])
+        )
         if verdict:
             sender = pair[0] if verdict == "first" else pair[1]
             found.names[sender] = "sender"
@@ -165,10 +206,20 @@ def _order_of_two(found: Calls, columns: list[Column], pair: list[int], calling:
     if len(empty) == 1:
         found.names[empty[0]] = "addressee"
         found.names[next(k for k in pair if k not in empty)] = "sender"
-        found.doubts.append(Doubt("sender, addressee", f"NOT SURE which of {labels} is which: the one that may be empty is taken as the addressee"))
+        found.doubts.append(
+            Doubt(
+                "sender, addressee",
+                f"NOT SURE which of {labels} is which: the one that may be empty is taken as the addressee",
+            )
+        )
     else:
         found.names[first], found.names[second] = "addressee", "sender"
-        found.doubts.append(Doubt("sender, addressee", f"NOT SURE which of {labels} is which: taken is the station called first, the caller second"))
+        found.doubts.append(
+            Doubt(
+                "sender, addressee",
+                f"NOT SURE which of {labels} is which: taken is the station called first, the caller second",
+            )
+        )
 
 
 def _by_locators(pairs: _Pairs) -> str:
@@ -192,7 +243,9 @@ def _by_locators(pairs: _Pairs) -> str:
                 kept[name] += sum(locators.values()) - 1 if len(locators) == 1 else 0
                 changed[name] += sum(locators.values()) - 1 if len(locators) > 1 else 0
     good = {name for name in kept if kept[name] >= _LEAST_VOTES and changed[name] * _CLEARLY <= kept[name]}
-    bad = {name for name in kept if changed[name] >= _LEAST_VOTES and kept[name] * _CLEARLY <= changed[name] * 2}
+    bad = {
+        name for name in kept if changed[name] >= _LEAST_VOTES and kept[name] * _CLEARLY <= changed[name] * 2
+    }
     for one, other in (("first", "second"), ("second", "first")):
         if one in good and other in bad:
             return one
@@ -223,6 +276,16 @@ def _settle_message(found: Calls, columns: list[Column], texts: list[str]) -> No
             Doubt(", ".join([*about, "locator"]), f"{len(odd)} of {len(with_calls)} messages with call signs are not of the usual"
                   f" forms, as {quoted(odd)}; write their form into [message] patterns")
         )  # fmt: skip
+    stuck = [
+        text for text in with_calls if "locator" not in read_usually(text) and _STUCK_LOCATOR.search(text)
+    ]
+    if stuck:
+        found.doubts.append(
+            Doubt(
+                "locator",
+                f"a sign sticks to the locator in {len(stuck)} texts, as {quoted(stuck, 1)}, which is then not read",
+            )
+        )
     strange = [text for text in with_calls if _strange_words(text)]
     if begins_with_numbers(texts):
         strange = strange or with_calls
@@ -233,7 +296,10 @@ def _settle_message(found: Calls, columns: list[Column], texts: list[str]) -> No
     if len(strange) > _STRANGE_SHARE * len(with_calls):
         words = quoted(word for text in strange for word in _strange_words(text))
         found.doubts.append(
-            Doubt("snr_db, audio_hz, late_s, mode, locator", f"many texts hold more than a message, as {words}: it may be one of these")
+            Doubt(
+                "snr_db, audio_hz, late_s, mode, locator",
+                f"many texts hold more than a message, as {words}: it may be one of these",
+            )
         )
     pairs = _pairs_of(texts)
     sender = next((k for k, name in found.names.items() if name == "sender"), None)
@@ -241,7 +307,9 @@ def _settle_message(found: Calls, columns: list[Column], texts: list[str]) -> No
     if sender is not None:
         order = _by_column(pairs, columns[sender].values)
         if order == "neither":
-            found.doubts.append(Doubt("sender, addressee", "the column of the sender and the messages contradict each other"))
+            found.doubts.append(
+                Doubt("sender, addressee", "the column of the sender and the messages contradict each other")
+            )
             order = ""
     order = order or _by_locators(pairs) or _by_words(texts)
     if not any(pairs.second):

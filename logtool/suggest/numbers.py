@@ -80,7 +80,12 @@ def could_be_late(spread: Spread) -> bool:
 def could_be_power(column: Column, spread: Spread) -> bool:
     """Return whether numbers are powers in dBm as messages carry them."""
     numbers = {number_of(value) for value in given(column.values) if is_number(value)}
-    return spread.low >= 0 and numbers <= _POWERS_DBM and all(number % 10 in _POWER_ENDS for number in numbers) and len(numbers) >= 3
+    return (
+        spread.low >= 0
+        and numbers <= _POWERS_DBM
+        and all(number % 10 in _POWER_ENDS for number in numbers)
+        and len(numbers) >= 3
+    )
 
 
 def hinted_number(column: Column, spread: Spread) -> tuple[str, str]:
@@ -98,7 +103,10 @@ def hinted_number(column: Column, spread: Spread) -> tuple[str, str]:
     if "snr" in means or (unit == "dB" and not means - {"snr", "signal", "report"}):
         if could_be_snr(spread) or (spread.low >= SNR_LOW_DB and spread.high <= SNR_HIGH_DB):
             return "snr_db", ""
-        return "", f"called {column.hint!r}, but {spread.low:g} to {spread.high:g} is no signal-to-noise ratio"
+        return (
+            "",
+            f"called {column.hint!r}, but {spread.low:g} to {spread.high:g} is no signal-to-noise ratio",
+        )
     if "late" in means or (unit in ("s", "ms") and "late_or_audio" in means):
         if unit == "ms":
             return "late_ms", ""
@@ -113,7 +121,10 @@ def hinted_number(column: Column, spread: Spread) -> tuple[str, str]:
         if unit == "mW":
             return "power_mw", ""
         if spread.low < -30:
-            return "", f"{spread.low:g} to {spread.high:g} dBm is a level at the receiver, not a sender's power"
+            return (
+                "",
+                f"{spread.low:g} to {spread.high:g} dBm is a level at the receiver, not a sender's power",
+            )
         if unit == "dBm":
             return "power_dbm", ""
         if could_be_power(column, spread):

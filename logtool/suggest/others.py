@@ -21,7 +21,18 @@ from logtool.suggest.values import is_number, is_word, number_of
 
 MOST_RULES = 10
 _COMMENT = re.compile(r"[ \t]*(#|;|//|\*|%|!)")
-_LISTENING = {"listened", "listening", "watch", "watched", "open", "active", "monitored", "monitoring", "receiving", "heard"}
+_LISTENING = {
+    "listened",
+    "listening",
+    "watch",
+    "watched",
+    "open",
+    "active",
+    "monitored",
+    "monitoring",
+    "receiving",
+    "heard",
+}
 _NOISE = {"dbfs", "noise", "level"}
 _NUMBER = r"[+-]?[0-9]+(?:[.,][0-9]+)?"
 _INTERVAL_SHARE = 0.7
@@ -97,7 +108,9 @@ def find_others(lines: list[Line], taken: set[int], times: Times, *, dated: bool
         if any(pattern.fullmatch(text) for text in heard):
             others.rules.remove(rule)
             others.carried -= set(rule.values)
-            others.doubts.append(Doubt("lines", f"a rule {rule.name!r} would take messages too and is left out"))
+            others.doubts.append(
+                Doubt("lines", f"a rule {rule.name!r} would take messages too and is left out")
+            )
     if others.left:
         calls = [text for text in others.left if holds_call(text)]
         shown = (calls or others.left)[0].strip()[:80]
@@ -123,7 +136,10 @@ def _clusters(lines: list[Line], taken: set[int]) -> list[_Cluster]:
         if i in taken:
             continue
         cores, end = cores_of(line.text)
-        key = [normal(core.glue) + "\n" + (core.text if core.kind in ("word", "empty") else core.kind) for core in cores]
+        key = [
+            normal(core.glue) + "\n" + (core.text if core.kind in ("word", "empty") else core.kind)
+            for core in cores
+        ]
         cluster = grouped[(*key, normal(end))]
         cluster.lines.append(line)
         cluster.cores.append((cores, end))
@@ -132,7 +148,14 @@ def _clusters(lines: list[Line], taken: set[int]) -> list[_Cluster]:
 
 
 def _carry(
-    others: Others, cluster: _Cluster, times: Times, lines: list[Line], taken: set[int], *, dated: bool, dial_known: bool
+    others: Others,
+    cluster: _Cluster,
+    times: Times,
+    lines: list[Line],
+    taken: set[int],
+    *,
+    dated: bool,
+    dial_known: bool,
 ) -> bool:
     """Make a rule of lines that give a date or a dial to the lines after them."""
     names: dict[int, str] = {}
@@ -144,7 +167,9 @@ def _carry(
         column = cluster.column(k)
         if core.kind in ("time", "number") and not dated and "date" not in names.values():
             days = [form for form in shared_forms(column.values) if has_date(form) and "%f" not in form]
-            if core.kind == "number" and not (meanings_of(column.hint) & {"date"} or len(core.text) in (6, 8)):
+            if core.kind == "number" and not (
+                meanings_of(column.hint) & {"date"} or len(core.text) in (6, 8)
+            ):
                 days = []
             if core.kind == "number" and radio_of(k, column, few=True) is not None:
                 days = [] if column.unit.lower() in ("hz", "khz", "mhz") else days
@@ -160,13 +185,15 @@ def _carry(
         if core.kind == "number" and not dial_known and not any("dial" in name for name in names.values()):
             column.unit = column.unit if column.unit.lower() in ("hz", "khz", "mhz") else ""
             column.unit = {"hz": "Hz", "khz": "kHz", "mhz": "MHz"}.get(column.unit.lower(), "")
-            if not column.unit and not meanings_of(column.hint) & {"dial", "frequency"}:
-                column.hint = ""
+            if column.unit or not meanings_of(column.hint) & {"dial", "frequency"}:
+                column.hint = ""  # words of prose
             radio = radio_of(k, column, few=True)
             if radio is not None:
                 names[k] = f"dial_{radio.unit.lower()}"
                 if not radio.sure:
-                    others.doubts.append(Doubt("dial_hz", f"its unit is taken as {radio.unit} by its size only"))
+                    others.doubts.append(
+                        Doubt("dial_hz", f"its unit is taken as {radio.unit} by its size only")
+                    )
     if not names:
         return False
     name = "-".join(sorted({"date" if n == "date" else "dial" for n in names.values()})) + "-lines"
@@ -211,17 +238,28 @@ def _status(others: Others, cluster: _Cluster, times: Times) -> bool:
         elif not any(name.startswith("on_") for name in names.values()):
             factor = 60 if unit in ("min", "minutes", "minute") else 1
             most, times_seen = Counter(column.values).most_common(1)[0]
-            fits = interval_s is not None and times_seen >= _INTERVAL_SHARE * len(column.values) and abs(
-                number_of(most) * factor - interval_s
-            ) < 0.1 * interval_s
+            fits = (
+                interval_s is not None
+                and times_seen >= _INTERVAL_SHARE * len(column.values)
+                and abs(number_of(most) * factor - interval_s) < 0.1 * interval_s
+            )
             told = bool(words & _LISTENING) and unit in ("s", "sec", "seconds", "min", "minutes", "minute")
             if fits or told:
                 names[k] = "on_min" if factor == 60 else "on_s"
                 if not (fits and told):
                     others.doubts.append(
-                        Doubt("watch", f"NOT SURE that lines as {cluster.lines[0].text.strip()[:60]!r} tell how long it listened")
+                        Doubt(
+                            "watch",
+                            f"NOT SURE that lines as {cluster.lines[0].text.strip()[:60]!r} tell how long it listened",
+                        )
                     )
-    kind = "watch" if any(name.startswith("on_") for name in names.values()) else "noise" if "dbfs" in names.values() else ""
+    kind = (
+        "watch"
+        if any(name.startswith("on_") for name in names.values())
+        else "noise"
+        if "dbfs" in names.values()
+        else ""
+    )
     if not kind:
         return False
     if names and times.date_form and "date" in names.values():
@@ -233,7 +271,12 @@ def _status(others: Others, cluster: _Cluster, times: Times) -> bool:
         toml.append(f"date_form = {plain(forms[1])}")
     number = sum(rule.kind == kind for rule in others.rules)
     others.rules.append(
-        OtherRule(kind, kind + (f"-{number + 1}" if number else ""), toml, [f"as {cluster.lines[0].text.strip()[:80]!r}"])
+        OtherRule(
+            kind,
+            kind + (f"-{number + 1}" if number else ""),
+            toml,
+            [f"as {cluster.lines[0].text.strip()[:80]!r}"],
+        )
     )
     return True
 
@@ -250,7 +293,14 @@ def _clock_of(cluster: _Cluster, clocks: list[int], times: Times) -> tuple[dict[
         if times.time_form in forms:
             names = {k: "time"}
             if times.date_form:
-                day = next((j for j in clocks if j != k and times.date_form in shared_forms(cluster.column(j).values)), None)
+                day = next(
+                    (
+                        j
+                        for j in clocks
+                        if j != k and times.date_form in shared_forms(cluster.column(j).values)
+                    ),
+                    None,
+                )
                 if day is None:
                     return {}, []
                 names[day] = "date"
@@ -265,7 +315,9 @@ def _clock_of(cluster: _Cluster, clocks: list[int], times: Times) -> tuple[dict[
 
 
 def _interval_s(moments: list[datetime]) -> float | None:
-    steps = Counter(round((b - a).total_seconds()) % 86_400 for a, b in zip(moments, moments[1:], strict=False))
+    steps = Counter(
+        round((b - a).total_seconds()) % 86_400 for a, b in zip(moments, moments[1:], strict=False)
+    )
     if not steps:
         return None
     step, times = steps.most_common(1)[0]
@@ -279,7 +331,11 @@ def _passed_over(others: Others, cluster: _Cluster, first: int) -> bool:
         return False
     sign = _COMMENT.match(text)
     if sign:
-        others.rules.append(OtherRule("skip", "comments", [f"pattern = {text_of('[ ' + chr(92) + 't]*' + escaped(sign[1]) + '.*')}"]))
+        others.rules.append(
+            OtherRule(
+                "skip", "comments", [f"pattern = {text_of('[ ' + chr(92) + 't]*' + escaped(sign[1]) + '.*')}"]
+            )
+        )
         return True
     cores = cluster.cores[0][0]
     rule_line = not cores
@@ -287,7 +343,13 @@ def _passed_over(others: Others, cluster: _Cluster, first: int) -> bool:
     if rule_line or (words_only and (len(cluster.lines) > 1 or cluster.at[0] < first)):
         number = sum(rule.name.startswith("header") for rule in others.rules)
         others.rules.append(
-            OtherRule("skip", f"headers-{number + 1}", [f"pattern = {text_of('[ ' + chr(92) + 't]*' + escaped(text.strip()) + '[ ' + chr(92) + 't]*')}"])
+            OtherRule(
+                "skip",
+                f"headers-{number + 1}",
+                [
+                    f"pattern = {text_of('[ ' + chr(92) + 't]*' + escaped(text.strip()) + '[ ' + chr(92) + 't]*')}"
+                ],
+            )
         )
         return True
     return False
@@ -304,7 +366,9 @@ def _merge_comments(others: Others) -> None:
             seen.add(rule.lines[0])
             rule.name = f"comments-{len(seen)}"
         kept.append(rule)
-    others.rules = [rule for rule in kept if rule.kind != "skip"] + [rule for rule in kept if rule.kind == "skip"]
+    others.rules = [rule for rule in kept if rule.kind != "skip"] + [
+        rule for rule in kept if rule.kind == "skip"
+    ]
 
 
 def _pattern_of(cluster: _Cluster, names: dict[int, str]) -> str:

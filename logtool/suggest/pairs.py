@@ -94,7 +94,9 @@ def pairs_table(lines: list[str], sign: str) -> Table | None:
     for k in range(lead):
         glue = Counter(cores[k].glue for cores, _ in leads if len(cores) == lead).most_common(1)[0][0]
         lead_glue.append(glue)
-        columns.append(Column(f"column {k + 1}", [cores[k].text if len(cores) == lead else "" for cores, _ in leads]))
+        columns.append(
+            Column(f"column {k + 1}", [cores[k].text if len(cores) == lead else "" for cores, _ in leads])
+        )
     lead_glue.append(Counter(end for cores, end in leads if len(cores) == lead).most_common(1)[0][0])
     columns += [Column(repr(key), values[key], key) for key in keys]
     merged = _merged(list(orders))
@@ -102,10 +104,14 @@ def pairs_table(lines: list[str], sign: str) -> Table | None:
     optional = frozenset(key for key in keys if any(key not in order for order in orders))
     commas = frozenset(key for key in keys if any("," in value for value in values[key]))
     all_keys = ("",) * lead + tuple(keys)
-    way = PairsWay(sign, tuple(merged[:MOST_ORDERS]), all_keys, lead, tuple(lead_glue), blanks, optional, commas)
+    way = PairsWay(
+        sign, tuple(merged[:MOST_ORDERS]), all_keys, lead, tuple(lead_glue), blanks, optional, commas
+    )
     table = Table(way, columns, rows)
     if len(merged) > MOST_ORDERS:
-        table.doubts.append(Doubt("lines", "the keys come in very many orders; those left over are set aside"))
+        table.doubts.append(
+            Doubt("lines", "the keys come in very many orders; those left over are set aside")
+        )
     table.keep(wanted)
     split_by_word(table, lines)
     without_wrong_times(table)

@@ -8,7 +8,15 @@ from dataclasses import dataclass
 
 from logtool.suggest.cores import Core, cores_of
 from logtool.suggest.hints import meanings_of, unit_of
-from logtool.suggest.tables import Column, Table, enough, give_names, holds_call, split_by_word, without_wrong_times
+from logtool.suggest.tables import (
+    Column,
+    Table,
+    enough,
+    give_names,
+    holds_call,
+    split_by_word,
+    without_wrong_times,
+)
 from logtool.suggest.toml import escaped, plain, text_of
 from logtool.suggest.values import CALLING_WORDS, ENOUGH, is_call, is_word, words_for_nothing
 
@@ -24,6 +32,8 @@ _PREPOSITIONS = ("at", "on", "in", "of", "when", "off")
 _LEAST_SHARE = 0.2  # of the lines that hold a call sign
 _DROPPED_SHARE = 0.2  # of the rows may be of another kind at a position
 _FEW_WORDS = 6
+_OTHER_SIGNS_SHARE = 0.1  # of the lines have other signs at a place: a second kind of messages' lines
+_MAIN_SIGNS_SHARE = 0.4
 _NUMBER_FIRST = ("time", "number")
 
 
@@ -60,7 +70,12 @@ class OrderWay:
     def rule(self, names: Mapping[int, str], forms: Mapping[int, str]) -> list[str]:
         """Return the rule's TOML lines."""
         at_end = self.text in (-1, len(self.glue) - 1)
-        plain_blanks = at_end and all(not glue.strip(" \t") for glue in self.glue) and not self.end and not self.blanks_inside
+        plain_blanks = (
+            at_end
+            and all(not glue.strip(" \t") for glue in self.glue)
+            and not self.end
+            and not self.blanks_inside
+        )
         if plain_blanks and all(self.glue[1:]) and not self.strict:
             columns = [names.get(k, "") for k in range(len(self.glue))]
             if self.text < 0 and columns[-1] == "" and any(columns):
@@ -105,7 +120,9 @@ def order_table(lines: list[str]) -> Table | None:
     dropped = 0
     k = 0
     counts = Counter(len(cut[i][0]) for i in rows)
-    even = enough(counts.most_common(1)[0][1], len(rows))  # so a general call may stand in a column of call signs
+    even = enough(
+        counts.most_common(1)[0][1], len(rows)
+    )  # so a general call may stand in a column of call signs
     while True:
         found = _position([cut[i][0] for i in rows], k, even=even)
         if found is None:
@@ -140,7 +157,8 @@ class _Pattern:
     def __init__(self, rows: list[list[Core]], glue: list[str], kinds: list[str]) -> None:
         self._glue, self._kinds = glue, kinds
         self._words = [
-            {row[k].text for row in rows} if kind in ("constant", "word") else set() for k, kind in enumerate(kinds)
+            {row[k].text for row in rows} if kind in ("constant", "word") else set()
+            for k, kind in enumerate(kinds)
         ]
 
     def fits(self, cores: list[Core]) -> bool:
@@ -225,7 +243,9 @@ def _table(lines: list[str], cut: list[tuple[list[Core], str]], rows: list[int],
     inside = any(" " in value for column in columns[:k] for value in column.values)
     empties = tuple(tuple(sorted(words_for_nothing(column.values))) for column in columns)
     tabs = any("\t" in lines[i] for i in rows)
-    way = OrderWay(tuple(glue), tuple(kinds), always, k if has_text else -1, end, inside, empties, tabs, dropped > 0)
+    way = OrderWay(
+        tuple(glue), tuple(kinds), always, k if has_text else -1, end, inside, empties, tabs, dropped > 0
+    )
     table = Table(way, columns, rows, strict=dropped > 0)
     give_names(table, lines)
     split_by_word(table, lines)
@@ -257,7 +277,8 @@ def _take_hints(columns: list[Column], glue: list[str], kinds: list[str]) -> Non
             continue
         if k and kinds[k - 1] == "constant":
             word = columns[k - 1].values[0]
-            if meanings_of(word) and word.lower() not in _PREPOSITIONS:
+            is_unit = k > 1 and kinds[k - 2] == "number" and unit_of(word)
+            if meanings_of(word) and word.lower() not in _PREPOSITIONS and not is_unit:
                 column.hint = word
         if k + 1 < len(columns) and kinds[k + 1] == "constant" and kinds[k] == "number":
             column.unit = unit_of(columns[k + 1].values[0])
@@ -270,7 +291,11 @@ def _main_group(lines: list[str], cut: list[list[Core]]) -> list[int]:
     if not counted:
         return []
     best, _ = counted.most_common(1)[0]
-    return [i for i, head in enumerate(heads) if head == best]
+    return [
+        i
+        for i, head in enumerate(heads)
+        if head and all(ours in (theirs, "empty") for ours, theirs in zip(head, best, strict=True))
+    ]
 
 
 def _head(cores: list[Core]) -> tuple[str, ...]:
@@ -282,7 +307,7 @@ def _head(cores: list[Core]) -> tuple[str, ...]:
 
 def _coarse(core: Core) -> str:
     kind = core.kind
-    return "number" if kind in ("number", "empty") else "time" if kind == "time" else "word"
+    return kind if kind in ("number", "time", "empty") else "word"
 
 
 def normal(glue: str) -> str:
@@ -297,15 +322,30 @@ def normal(glue: str) -> str:
     return out
 
 
-def _position(rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE, *, even: bool = False) -> tuple[list[bool], str, str] | None:
+def _glue(row: list[Core], k: int) -> str:
+    return normal(row[k].glue) if k else normal(row[k].glue).strip()
+
+
+def _position(
+    rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE, *, even: bool = False
+) -> tuple[list[bool], str, str] | None:
     """Return which rows are of the main kind at a position, that kind and the signs before, or None for text."""
+    given_rows = rows
     there = [row for row in rows if len(row) > k]
     if not enough(len(there), len(rows)):
         return None
-    glues = Counter(normal(row[k].glue) if k else normal(row[k].glue).strip() for row in there)
+    glues = Counter(_glue(row, k) for row in there)
     before, times = glues.most_common(1)[0]
     if times < needed * len(there):
-        return None
+        signs = [glue.strip() for glue, n in glues.items() if n >= _OTHER_SIGNS_SHARE * len(there)]
+        if len(set(signs)) < 2 or times < _MAIN_SIGNS_SHARE * len(there) or needed == ENOUGH:
+            return None  # else signs tell two kinds of lines apart: the others are looked at later
+        rows = [row for row in rows if len(row) > k and _glue(row, k) == before]
+        kept = _position(rows, k, needed, even=even)
+        if kept is None:
+            return None
+        good_rows = {id(row): ok for row, ok in zip(rows, kept[0], strict=True)}
+        return [good_rows.get(id(row), False) for row in given_rows], kept[1], kept[2]
     words = Counter(row[k].text for row in there)
     kinds = Counter(row[k].kind for row in there)
     empties = kinds.pop("empty", 0)
@@ -316,7 +356,7 @@ def _position(rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE
     def good(test: Mapping[str, bool] | set[str], *, by_text: bool = False) -> list[bool]:
         return [
             len(row) > k
-            and (normal(row[k].glue) if k else normal(row[k].glue).strip()) == before
+            and _glue(row, k) == before
             and ((row[k].text if by_text else row[k].kind) in test or row[k].kind == "empty")
             for row in rows
         ]
@@ -327,7 +367,10 @@ def _position(rows: list[list[Core]], k: int, needed: float = 1 - _DROPPED_SHARE
         return good({kind}), kind, before
     calling = set(words) & CALLING_WORDS
     if calling and even and set(kinds) <= {"call", "word"}:
-        most, total = sum(n for word, n in words.items() if is_call(word) or word in CALLING_WORDS), len(there)
+        most, total = (
+            sum(n for word, n in words.items() if is_call(word) or word in CALLING_WORDS),
+            len(there),
+        )
         if most + empties < ENOUGH * total or len(words) == len(calling):
             return None
         return good({word for word in words if is_call(word)} | calling, by_text=True), "call", before

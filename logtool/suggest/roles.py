@@ -10,10 +10,25 @@ from logtool.suggest.doubts import Doubt
 from logtool.suggest.frequencies import Frequency, could_be_audio, lies_above_dials, name_radio, radio_of
 from logtool.suggest.hints import meanings_of, unit_of
 from logtool.suggest.messages import Calls, find_calls, read_usually
-from logtool.suggest.numbers import Spread, could_be_late, could_be_power, could_be_snr, hinted_number, spread_of
+from logtool.suggest.numbers import (
+    Spread,
+    could_be_late,
+    could_be_power,
+    could_be_snr,
+    hinted_number,
+    spread_of,
+)
 from logtool.suggest.tables import Column, Table
 from logtool.suggest.times import Times, find_times, name_date_of
-from logtool.suggest.values import given, is_call, is_mode_word, is_number, number_of, quoted, words_for_nothing
+from logtool.suggest.values import (
+    given,
+    is_call,
+    is_mode_word,
+    is_number,
+    number_of,
+    quoted,
+    words_for_nothing,
+)
 from logtool.suggest.wordy import name_words
 
 KEPT_FOR_CHECK = ("other", "report", "drift", "dbfs", "power")
@@ -68,7 +83,9 @@ def find_roles(table: Table, parts: list[int], file_name: str) -> Roles:
     roles.notes |= roles.calls.notes
     roles.doubts += roles.calls.doubts
     spreads = {
-        k: spread for k, column in enumerate(columns) if k not in roles.names and (spread := spread_of(column))
+        k: spread
+        for k, column in enumerate(columns)
+        if k not in roles.names and (spread := spread_of(column))
     }
     _by_hints(roles, columns, spreads)
     _frequencies(roles, columns, spreads)
@@ -109,12 +126,12 @@ def _frequencies(roles: Roles, columns: list[Column], spreads: dict[int, Spread]
             radio.append(one)
         elif "audio" in means and unit == "kHz" and spreads[k].low >= 0:
             roles.names[k] = "audio_khz"
-        elif could_be_audio(column) and unit not in ("kHz", "MHz", "dB", "s", "ms", "W", "mW", "dBm"):
-            audio.append(k)
-        elif "audio" in means and spreads[k].low >= 0 and spreads[k].high <= 24_000:
+        elif (could_be_audio(column) and unit not in ("kHz", "MHz", "dB", "s", "ms", "W", "mW", "dBm")) or ("audio" in means and spreads[k].low >= 0 and spreads[k].high <= 24_000):
             audio.append(k)
     if len(audio) > 1:
-        audio = [k for k in audio if any(not one.few and lies_above_dials(one, _hz(columns[k])) for one in radio)] or audio
+        audio = [
+            k for k in audio if any(not one.few and lies_above_dials(one, _hz(columns[k])) for one in radio)
+        ] or audio
     _name_audio(roles, columns, audio)
     chosen = next((k for k, name in roles.names.items() if target_of(name) == "audio_hz"), None)
     heard_hz: tuple[float | None, ...] | None = None
@@ -124,7 +141,9 @@ def _frequencies(roles: Roles, columns: list[Column], spreads: dict[int, Spread]
     roles.names |= names
     roles.doubts += doubts
     for k in names:
-        roles.notes[k] = "radio frequencies by the amateur bands" + (", few different ones" if "dial" in names[k] else "")
+        roles.notes[k] = "radio frequencies by the amateur bands" + (
+            ", few different ones" if "dial" in names[k] else ""
+        )
     for one in radio:
         if one.column not in names:
             roles.notes.setdefault(one.column, "radio frequencies")
@@ -146,7 +165,9 @@ def _name_audio(roles: Roles, columns: list[Column], audio: list[int]) -> None:
         roles.names[k] = "audio_hz"
         roles.notes[k] = "audio frequencies by size and spread"
         if not named and columns[k].hint.strip():
-            roles.doubts.append(Doubt("audio_hz", f"{columns[k].label} is taken by its values; its name does not say so"))
+            roles.doubts.append(
+                Doubt("audio_hz", f"{columns[k].label} is taken by its values; its name does not say so")
+            )
     elif candidates:
         labels = ", ".join(columns[k].label for k in candidates)
         roles.doubts.append(Doubt("audio_hz", f"NOT SURE which column it is: {labels}; none is read"))
@@ -166,14 +187,20 @@ def _by_values(roles: Roles, columns: list[Column], spreads: dict[int, Spread]) 
         if k not in roles.names and k not in roles.notes and meanings_of(columns[k].hint) & {"signal", "report", "late_or_audio"}
     }  # fmt: skip
     if roles.free("snr_db"):
-        snr = [k for k, spread in (free | loose).items() if could_be_snr(spread) and not could_be_power(columns[k], spread)]
+        snr = [
+            k
+            for k, spread in (free | loose).items()
+            if could_be_snr(spread) and not could_be_power(columns[k], spread)
+        ]
         _take(roles, columns, spreads, snr, "snr_db")
     if roles.free("late_s"):
         late = [k for k, spread in (free | loose).items() if could_be_late(spread) and k not in roles.names]
         _take(roles, columns, spreads, late, "late_s")
 
 
-def _take(roles: Roles, columns: list[Column], spreads: dict[int, Spread], candidates: list[int], name: str) -> None:
+def _take(
+    roles: Roles, columns: list[Column], spreads: dict[int, Spread], candidates: list[int], name: str
+) -> None:
     negative = [k for k in candidates if spreads[k].negative]
     kept = negative or candidates
     if not kept:
@@ -195,7 +222,9 @@ def _take(roles: Roles, columns: list[Column], spreads: dict[int, Spread], candi
         )
     elif len(candidates) > 1:
         labels = ", ".join(columns[j].label for j in candidates if j != k)
-        roles.doubts.append(Doubt(name, f"{columns[k].label} is taken because it goes below 0; {labels} could be it too"))
+        roles.doubts.append(
+            Doubt(name, f"{columns[k].label} is taken because it goes below 0; {labels} could be it too")
+        )
 
 
 def _doubt_places(roles: Roles, columns: list[Column]) -> None:
@@ -220,7 +249,10 @@ def _doubt_places(roles: Roles, columns: list[Column]) -> None:
     varying = sum(len(by_sender[call]) > 1 for call, n in count.items() if n > 1)
     if varying < _VARYING_SENDERS:
         roles.doubts.append(
-            Doubt("audio_hz", f"{columns[audio].label} is not seen to vary for one sender: it could be a distance too")
+            Doubt(
+                "audio_hz",
+                f"{columns[audio].label} is not seen to vary for one sender: it could be a distance too",
+            )
         )
 
 
@@ -242,7 +274,10 @@ def _left_out(roles: Roles, columns: list[Column], spreads: dict[int, Spread]) -
             continue
         if could:
             roles.doubts.append(
-                Doubt(", ".join(could), f"{column.label} ({shown}) is left out: its values do not tell whether it is one of these")
+                Doubt(
+                    ", ".join(could),
+                    f"{column.label} ({shown}) is left out: its values do not tell whether it is one of these",
+                )
             )
         elif len(set(values)) > 1:
             roles.doubts.append(Doubt("left out", f"{column.label} ({shown}) is not read", essential=False))
@@ -255,12 +290,14 @@ def _could_be(roles: Roles, column: Column, spread: Spread | None) -> list[str]:
         return []
     could: list[str] = []
     always = len(set(given(column.values))) == 1 and len(column.values) >= _ENOUGH_ROWS
-    if (spread is not None and always) or (column.literal and (meanings_of(column.values[0]) or unit_of(column.values[0]))):
+    if (spread is not None and always) or (
+        column.literal and (meanings_of(column.values[0]) or unit_of(column.values[0]))
+    ):
         return []
     if spread is not None:
-        if -60 <= spread.low and spread.high <= 80:
+        if spread.low >= -60 and spread.high <= 80:
             could.append("snr_db")
-        if -60 <= spread.p5 and spread.p95 <= 60:
+        if spread.p5 >= -60 and spread.p95 <= 60:
             could.append("late_s")
         if spread.low >= 0 and spread.high <= 24_000:
             could.append("audio_hz")
@@ -270,7 +307,11 @@ def _could_be(roles: Roles, column: Column, spread: Spread | None) -> list[str]:
         could += ["sender", "addressee"]
     elif column.kind == "locator":
         could.append("locator")
-    elif column.kind == "word" and all(map(is_mode_word, given(column.values))) and not (always and column.values[0].islower()):
+    elif (
+        column.kind == "word"
+        and all(map(is_mode_word, given(column.values)))
+        and not (always and column.values[0].islower())
+    ):
         could.append("mode")
     elif column.kind == "text":
         could += ["sender", "addressee"]
@@ -294,7 +335,9 @@ def _written(roles: Roles, columns: list[Column]) -> None:
     if commas:
         roles.decimal = ","
         if points:
-            roles.doubts.append(Doubt("decimal", "numbers are written with points and with commas; the comma is taken"))
+            roles.doubts.append(
+                Doubt("decimal", "numbers are written with points and with commas; the comma is taken")
+            )
 
 
 __all__ = ["NAME_FORM", "Roles", "find_roles"]

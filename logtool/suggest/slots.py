@@ -22,7 +22,10 @@ def grid_of(moments: list[datetime]) -> tuple[float, float] | None:
     moments : list of datetime
         In the order of the lines.
     """
-    of_day = [moment.hour * 3600 + moment.minute * 60 + moment.second + moment.microsecond / 1e6 for moment in moments]
+    of_day = [
+        moment.hour * 3600 + moment.minute * 60 + moment.second + moment.microsecond / 1e6
+        for moment in moments
+    ]
     if len(set(of_day)) < _LEAST_TIMES:
         return None
     for step_s in _CANDIDATES_S:
@@ -83,7 +86,9 @@ def find_slots(moments: list[datetime | None], form: str, parts: list[int]) -> S
         return found
     for step_s in (7.5, 3.75):
         if is_cut_grid(known, step_s):
-            found.doubts.append(Doubt("time", f"slots seem to be {step_s:g} s long, but the times are cut to whole seconds"))
+            found.doubts.append(
+                Doubt("time", f"slots seem to be {step_s:g} s long, but the times are cut to whole seconds")
+            )
             break
     return found
 

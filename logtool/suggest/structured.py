@@ -49,7 +49,10 @@ class SeparatedWay:
         if self.header:
             columns = {name: plain(self.header[k]) for k, name in names.items()}
             return [separator, "header = true", f"columns = {inline(columns)}"]
-        return [separator, "columns = [" + ", ".join(plain(names.get(k, "")) for k in range(self.columns)) + "]"]
+        return [
+            separator,
+            "columns = [" + ", ".join(plain(names.get(k, "")) for k in range(self.columns)) + "]",
+        ]
 
     def _pattern(self, names: Mapping[int, str]) -> str:
         sign = escaped(self.separator) if self.separator != "\t" else r"\t"
@@ -136,16 +139,21 @@ def separated_table(lines: list[str], separator: str) -> Table | None:
     counts = Counter(len(cut[i]) for i in telling if len(cut[i]) >= FEWEST_COLUMNS)
     if not counts or sum(counts.values()) < _LEAST_SHARE * len(telling):
         return None
-    count = min(n for n, times in counts.items() if times >= 0.15 * len(telling)) if (
-        max(counts.values()) >= 0.15 * len(telling)
-    ) else counts.most_common(1)[0][0]
+    count = (
+        min(n for n, times in counts.items() if times >= 0.15 * len(telling))
+        if (max(counts.values()) >= 0.15 * len(telling))
+        else counts.most_common(1)[0][0]
+    )
     longer = sum(times for n, times in counts.items() if n > count)
     rest = longer > 0.005 * len(telling) and _rest_is_text(cut, telling, count)
     rows = [i for i in range(len(lines)) if len(cut[i]) == count or (rest and len(cut[i]) > count)]
     if len(rows) < _LEAST_SHARE * len(lines):
         return None
     if rest:
-        cut = [fields if len(fields) <= count else _rejoined(lines[i], separator, count) for i, fields in enumerate(cut)]
+        cut = [
+            fields if len(fields) <= count else _rejoined(lines[i], separator, count)
+            for i, fields in enumerate(cut)
+        ]
     headers = _header_rows(lines, cut, rows)
     names = tuple(cut[headers[0]]) if headers else ()
     rows = [i for i in rows if i not in set(headers)]
@@ -178,7 +186,11 @@ def _rest_is_text(cut: list[list[str]], telling: list[int], count: int) -> bool:
     for k in range(count - 1):
         ours = Column("", [fields[k] for fields in exact]).kind
         theirs = Column("", [fields[k] for fields in longer]).kind
-        if ours in ("time", "number", "call", "locator") and theirs in ("time", "number", "call", "locator") and ours != theirs:
+        if (
+            ours in ("time", "number", "call", "locator")
+            and theirs in ("time", "number", "call", "locator")
+            and ours != theirs
+        ):
             return False
         alike += ours == theirs
     return alike >= (count - 1) / 2
@@ -202,7 +214,10 @@ def _is_names(fields: list[str]) -> bool:
     return (
         len(named) >= _NAMED_SHARE * len(fields)
         and not any(
-            is_number(field) or forms_of(field) or (is_call(field) and not field.isalpha()) or is_locator(field)
+            is_number(field)
+            or forms_of(field)
+            or (is_call(field) and not field.isalpha())
+            or is_locator(field)
             for field in fields
         )
         and len(set(named)) > len(named) / 2

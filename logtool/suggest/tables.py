@@ -132,7 +132,9 @@ def split_by_word(table: Table, lines: list[str]) -> None:
     """Keep the rows of messages where a column's word says that other rows are of another kind."""
     for k, column in enumerate(table.columns):
         counted = Counter(column.values)
-        if not 1 < len(counted) <= FEW_WORDS or not all(is_word(word) or len(word) == 1 for word in counted if word):
+        if not 1 < len(counted) <= FEW_WORDS or not all(
+            is_word(word) or len(word) == 1 for word in counted if word
+        ):
             continue
         with_calls = Counter(
             value for row, value in zip(table.rows, column.values, strict=True) if holds_call(lines[row])
@@ -165,7 +167,11 @@ def give_names(table: Table, lines: list[str]) -> None:
     taken = set(table.rows)
     for i, line in enumerate(lines[: max(table.rows[0], 1)]):
         words = line.strip(" \t#;*%/|").split()
-        if i in taken or len(words) != len(table.columns) or not all(any(map(str.isalpha, word)) for word in words):
+        if (
+            i in taken
+            or len(words) != len(table.columns)
+            or not all(any(map(str.isalpha, word)) for word in words)
+        ):
             continue
         if sum(bool(meanings_of(word)) for word in words) < 0.5 * len(words):
             continue

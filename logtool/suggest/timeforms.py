@@ -17,7 +17,7 @@ _MOST_FORMS_SEEN = 400  # different values that are looked at; our choice
 _UNIX_LOW, _UNIX_HIGH = 946_684_800, 4_102_444_800  # the years 2000 to 2099
 # Patterns that begin a value, with the forms they may be; {0} is the sign between the parts.
 _DATES = [
-    (r"\d{4}([-/.])\d{1,2}\1\d{1,2}", ("%Y{0}%m{0}%d", "%Y{0}%d{0}%m")),
+    (r"\d{4}([-/.])\d{1,2}\1\d{1,2}", ("%Y{0}%m{0}%d",)),
     (r"\d{1,2}([-/.])\d{1,2}\1\d{4}", ("%d{0}%m{0}%Y", "%m{0}%d{0}%Y")),
     (r"\d{1,2}([-/.])\d{1,2}\1\d{2}(?!\d)", ("%y{0}%m{0}%d", "%d{0}%m{0}%y", "%m{0}%d{0}%y")),
     (r"\d{4}-\d{3}(?!\d)", ("%Y-%j",)),
@@ -120,7 +120,11 @@ def _whole_forms(value: str) -> list[str]:
     for form, rest in times:
         sign = re.match(r"( +|, ?|_|/)", rest)
         if sign:
-            found += [form + re.sub(" +", " ", sign[0]) + date for date, left in _date_starts(rest[sign.end() :]) if not left]
+            found += [
+                form + re.sub(" +", " ", sign[0]) + date
+                for date, left in _date_starts(rest[sign.end() :])
+                if not left
+            ]
     return found
 
 

@@ -84,14 +84,24 @@ def find_times(columns: list[Column], parts: list[int], name_date: datetime | No
         others = [one for one in full if one.column != chosen.column and one.rank[:1] == chosen.rank[:1]]
         if others:
             labels = ", ".join(columns[one.column].label for one in others)
-            found.doubts.append(Doubt("time", f"there are further columns of times ({labels}); {columns[chosen.column].label} is taken"))
+            found.doubts.append(
+                Doubt(
+                    "time",
+                    f"there are further columns of times ({labels}); {columns[chosen.column].label} is taken",
+                )
+            )
         _settle_full(found, columns[chosen.column], chosen, parts, name_date)
     elif clocks:
         chosen = min(clocks, key=lambda one: one.rank)
         others = [one for one in clocks if one.column != chosen.column and one.rank[:2] == chosen.rank[:2]]
         if others:
             labels = ", ".join(columns[one.column].label for one in others)
-            found.doubts.append(Doubt("time", f"there are further columns that could be times ({labels}); {columns[chosen.column].label} is taken"))
+            found.doubts.append(
+                Doubt(
+                    "time",
+                    f"there are further columns that could be times ({labels}); {columns[chosen.column].label} is taken",
+                )
+            )
         found.time, found.time_form = chosen.column, chosen.forms[0]
         dates = [one for one in dates if one.column != chosen.column]
         values = columns[chosen.column].values
@@ -108,7 +118,9 @@ def find_times(columns: list[Column], parts: list[int], name_date: datetime | No
     return found
 
 
-def _candidates(columns: list[Column], parts: list[int]) -> tuple[list[_Candidate], list[_Candidate], list[_Candidate]]:
+def _candidates(
+    columns: list[Column], parts: list[int]
+) -> tuple[list[_Candidate], list[_Candidate], list[_Candidate]]:
     full, clocks, dates = [], [], []
     for k, column in enumerate(columns):
         values = given(column.values)
@@ -164,13 +176,18 @@ def _neighbours(moments: Moments, parts: list[int]) -> list[tuple[datetime, date
     return pairs
 
 
-def _settle_full(found: Times, column: Column, chosen: _Candidate, parts: list[int], name_date: datetime | None) -> None:
+def _settle_full(
+    found: Times, column: Column, chosen: _Candidate, parts: list[int], name_date: datetime | None
+) -> None:
     found.time = chosen.column
     if chosen.forms[0] in (ISO, UNIX_S, UNIX_MS):
         found.time_form = chosen.forms[0]
     else:
         found.time_form, doubt = best_form(
-            list(chosen.forms), lambda form: [moment_of(value, form) for value in column.values], parts, name_date
+            list(chosen.forms),
+            lambda form: [moment_of(value, form) for value in column.values],
+            parts,
+            name_date,
         )
         if doubt:
             found.doubts.append(Doubt("time", f"{doubt} ({quoted(column.values)})"))
@@ -201,9 +218,6 @@ def best_form(
     forms: list[str], read: Callable[[str], Moments], parts: list[int], name_date: datetime | None
 ) -> tuple[str, str]:
     """Return the form that the order of the lines speaks for, and what is to doubt about it (or an empty text)."""
-    year_first = [form for form in forms if re.search("%Y.?%m.?%d", form)]
-    if year_first:  # nobody writes year, day, month
-        return year_first[0], ""
     readings = {form: read(form) for form in forms}
     different = {tuple(reading) for reading in readings.values()}
     if len(different) == 1:
@@ -218,7 +232,9 @@ def best_form(
         return form, ""
     tied = [form for cost, _, form in costs if cost <= best * _CLEARLY + 1.0]
     top_year = datetime.now().year + 1
-    likely = [form for form in tied if all(m is None or top_year - 12 <= m.year <= top_year for m in readings[form])]
+    likely = [
+        form for form in tied if all(m is None or top_year - 12 <= m.year <= top_year for m in readings[form])
+    ]
     if len(likely) == 1:
         return likely[0], (
             f"day, month and year are read as {likely[0]}, the only order that gives a year of these days;"
@@ -259,7 +275,9 @@ def _doubt_twelve_hours(found: Times, parts: list[int]) -> None:
         )  # fmt: skip
 
 
-NAME_DATE = re.compile(r"(?<!\d)(?:\d{4}([-_.]?)\d\d\1\d\d|\d\d([-_.]?)\d\d\2\d{4}|\d{6}|\d\d([-_.])\d\d\3\d\d)(?!\d)")
+NAME_DATE = re.compile(
+    r"(?<!\d)(?:\d{4}([-_.]?)\d\d\1\d\d|\d\d([-_.]?)\d\d\2\d{4}|\d{6}|\d\d([-_.])\d\d\3\d\d)(?!\d)"
+)
 
 
 def date_in_name(name: str) -> tuple[str, list[str], re.Match[str]] | None:
@@ -272,7 +290,9 @@ def date_in_name(name: str) -> tuple[str, list[str], re.Match[str]] | None:
     for match in NAME_DATE.finditer(name):
         written = match[0]
         sign = next((c for c in written if not c.isdigit()), "")
-        if len(re.split(r"\D", written)[0]) == 4 or (not sign and len(written) == 8 and written[:2] in ("19", "20")):
+        if len(re.split(r"\D", written)[0]) == 4 or (
+            not sign and len(written) == 8 and written[:2] in ("19", "20")
+        ):
             forms = [f"%Y{sign}%m{sign}%d"]
         elif len(written.replace(sign, "") if sign else written) == 8:
             forms = [f"%d{sign}%m{sign}%Y", f"%m{sign}%d{sign}%Y"]

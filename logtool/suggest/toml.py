@@ -48,7 +48,10 @@ def escaped(literal: str) -> str:
                 out.append("[ \t]+")
         else:
             out.append("\\" + c if c in _SPECIAL else c)
-    return "".join(" +" if piece == "[ \t]+" and "\t" not in literal else r"[ \t]+" if piece == "[ \t]+" else piece for piece in out)
+    return "".join(
+        " +" if piece == "[ \t]+" and "\t" not in literal else r"[ \t]+" if piece == "[ \t]+" else piece
+        for piece in out
+    )
 
 
 def comment(text: str, *, first: str = "# ", rest: str = "#   ") -> list[str]:

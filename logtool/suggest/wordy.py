@@ -32,13 +32,23 @@ def name_words(roles: Roles, columns: list[Column]) -> None:
             roles.where[k] = "|".join(sorted({v for v in given(columns[k].values) if v.upper() in _RECEIVED}))
             roles.notes[k] = "received or sent"
             roles.doubts.append(
-                Doubt("lines", f"{columns[k].label} tells received lines from sent ones; sent ones are set aside", essential=False)
+                Doubt(
+                    "lines",
+                    f"{columns[k].label} tells received lines from sent ones; sent ones are set aside",
+                    essential=False,
+                )
             )
         elif words and all(map(_BAND_NAME.fullmatch, words)):
             roles.notes[k] = "names of bands"
-        elif "receiver" in meanings_of(columns[k].hint) and all(map(_NAME.fullmatch, given(columns[k].values))):
+        elif "receiver" in meanings_of(columns[k].hint) and all(
+            map(_NAME.fullmatch, given(columns[k].values))
+        ):
             roles.names[k] = "receiver"
-    _name_mode(roles, columns, [k for k in wordy if k not in roles.names and k not in roles.notes and k not in roles.where])
+    _name_mode(
+        roles,
+        columns,
+        [k for k in wordy if k not in roles.names and k not in roles.notes and k not in roles.where],
+    )
 
 
 def _few(column: Column) -> bool:
@@ -46,7 +56,11 @@ def _few(column: Column) -> bool:
     different = len(set(values))
     if "mode" in meanings_of(column.hint):
         return bool(values) and column.kind not in ("number", "time", "text") and different <= FEW_WORDS
-    return bool(values) and column.kind not in ("number", "time", "text", "call", "locator") and different <= max(1, min(FEW_WORDS, len(values) / 4))
+    return (
+        bool(values)
+        and column.kind not in ("number", "time", "text", "call", "locator")
+        and different <= max(1, min(FEW_WORDS, len(values) / 4))
+    )
 
 
 def _name_mode(roles: Roles, columns: list[Column], wordy: list[int]) -> None:
@@ -56,24 +70,38 @@ def _name_mode(roles: Roles, columns: list[Column], wordy: list[int]) -> None:
         roles.names[named[0]] = "mode"
         if not all(map(is_mode_word, words)) or not all(any(c.isalnum() for c in word) for word in words):
             roles.doubts.append(
-                Doubt("mode", f"{columns[named[0]].label} holds {quoted(words)}: say in [values.mode] what they stand for")
+                Doubt(
+                    "mode",
+                    f"{columns[named[0]].label} holds {quoted(words)}: say in [values.mode] what they stand for",
+                )
             )
         return
     unnamed = [k for k in wordy if not meanings_of(columns[k].hint)]
     able = [k for k in unnamed if all(_could_be_mode(value) for value in set(given(columns[k].values)))]
-    clear = [k for k in able if all(_LETTER_AND_DIGIT.fullmatch(value) for value in set(given(columns[k].values)))]
+    clear = [
+        k for k in able if all(_LETTER_AND_DIGIT.fullmatch(value) for value in set(given(columns[k].values)))
+    ]
     if len(clear) == 1 and len(able) == 1:
         roles.names[clear[0]] = "mode"
         if all(map(is_locator, given(columns[clear[0]].values))):
-            roles.doubts.append(Doubt("mode, locator", f"{columns[clear[0]].label} ({quoted(columns[clear[0]].values)}) is taken as the mode; it has the form of locators too"))
+            roles.doubts.append(
+                Doubt(
+                    "mode, locator",
+                    f"{columns[clear[0]].label} ({quoted(columns[clear[0]].values)}) is taken as the mode; it has the form of locators too",
+                )
+            )
         roles.notes[clear[0]] = f"few words of letters and digits: {quoted(columns[clear[0]].values)}"
         if columns[clear[0]].hint.strip():
-            roles.doubts.append(Doubt("mode", f"{columns[clear[0]].label} is taken by its values; its name does not say so"))
+            roles.doubts.append(
+                Doubt("mode", f"{columns[clear[0]].label} is taken by its values; its name does not say so")
+            )
     elif clear or able:
         k = (clear or able)[0]
         if len(clear or able) == 1:
             roles.names[k] = "mode"
-            roles.doubts.append(Doubt("mode", f"NOT SURE that {columns[k].label} ({quoted(columns[k].values)}) is the mode"))
+            roles.doubts.append(
+                Doubt("mode", f"NOT SURE that {columns[k].label} ({quoted(columns[k].values)}) is the mode")
+            )
         else:
             labels = ", ".join(columns[k].label for k in clear or able)
             roles.doubts.append(Doubt("mode", f"NOT SURE which column it is: {labels}; none is read"))

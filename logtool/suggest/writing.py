@@ -24,9 +24,7 @@ _SHOWN_LINES = 5
 _CLOCK_PATTERNS = {"%H": "[0-9]{1,2}", "%I": "[0-9]{1,2}", "%M": "[0-9]{2}", "%S": "[0-9]{2}", "%f": "[0-9]{1,6}",
                    "%p": "[AaPp][Mm]", "%Y": "[0-9]{4}", "%y": "[0-9]{2}", "%m": "[0-9]{1,2}", "%d": " ?[0-9]{1,2}",
                    "%b": "[A-Za-z]{3}", "%B": "[A-Za-z]+", "%j": "[0-9]{3}"}  # fmt: skip
-_ISO_PATTERN = (
-    "[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(?::[0-9]{2})?(?:[.,][0-9]+)?(?: ?Z| ?[+-][0-9]{2}:?[0-9]*)?"
-)
+_ISO_PATTERN = "[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(?::[0-9]{2})?(?:[.,][0-9]+)?(?: ?Z| ?[+-][0-9]{2}:?[0-9]*)?"
 
 
 @dataclass
@@ -39,6 +37,7 @@ class Draft:
     others: Others
     slots: Slots
     name_date: tuple[str, list[str], re.Match[str]] | None
+    second: tuple[Table, Roles] | None  # messages that lack a column
     doubts: list[Doubt] = field(default_factory=list)
 
     @property
@@ -59,7 +58,14 @@ def written(draft: Draft) -> tuple[str, str]:
     """Return the recipe's text, and the same with stand-ins for what has to be filled in."""
     _settle(draft)
     head = _head(draft)
-    body = [*_top(draft), *_constants(draft), *_name(draft), *_values(draft), *_rules(draft), *_message(draft)]
+    body = [
+        *_top(draft),
+        *_constants(draft),
+        *_name(draft),
+        *_values(draft),
+        *_rules(draft),
+        *_message(draft),
+    ]
     recipe = "\n".join([*head, *body]) + "\n"
     trial = recipe
     for key, value in _STAND_INS.items():
@@ -76,7 +82,10 @@ def no_structure(look: Look, why: str) -> str:
         "#",
         "# The first lines:",
     ]
-    out += [f"#   {''.join(c if c.isprintable() else '?' for c in line.text[:100])}" for line in look.lines[:_SHOWN_LINES]]
+    out += [
+        f"#   {''.join(c if c.isprintable() else '?' for c in line.text[:100])}"
+        for line in look.lines[:_SHOWN_LINES]
+    ]
     out += [
         "#",
         "# To write one by hand, see docs/recipes.md. A recipe needs at least: the receiver's name and the dial in",
@@ -100,27 +109,51 @@ def _settle(draft: Draft) -> None:
     roles, times = draft.roles, draft.roles.times
     doubts = draft.doubts
     if not times.zone_known:
-        why = "its column is called local: give the zone" if times.local else "the text does not say whether times are UTC or local; read as UTC"
+        why = (
+            "its column is called local: give the zone"
+            if times.local
+            else "the text does not say whether times are UTC or local; read as UTC"
+        )
         doubts.append(Doubt("zone", why, essential=times.local))
     doubts.append(
-        Doubt("time_marks", "no text tells whether a time marks the start or the end of its slot; read as the start", essential=False)
+        Doubt(
+            "time_marks",
+            "no text tells whether a time marks the start or the end of its slot; read as the start",
+            essential=False,
+        )
     )
     if draft.needs_date:
         what = "day" if not times.dated else "year"
-        doubts.append(Doubt("date", f"the text does not tell the {what}; give --date YYYY-MM-DD, the day of the file's first line", essential=False))
+        doubts.append(
+            Doubt(
+                "date",
+                f"the text does not tell the {what}; give --date YYYY-MM-DD, the day of the file's first line",
+                essential=False,
+            )
+        )
     if draft.name_date and len(draft.name_date[1]) > 1 and "date" not in draft.others.carried:
-        doubts.append(Doubt("time", f"NOT SURE of the order in the date {draft.name_date[0]!r} of the file's name: {' or '.join(draft.name_date[1])}"))
+        doubts.append(
+            Doubt(
+                "time",
+                f"NOT SURE of the order in the date {draft.name_date[0]!r} of the file's name: {' or '.join(draft.name_date[1])}",
+            )
+        )
     if not draft.dial_known:
         varying = " of each line" if roles.has("signal_hz") else ""
-        doubts.append(Doubt("dial_hz", f"the text does not give the dial{varying}; fill it in", essential=False))
-    if roles.times.dated and not roles.times.with_year and "date" in draft.others.carried:
-        pass
+        doubts.append(
+            Doubt("dial_hz", f"the text does not give the dial{varying}; fill it in", essential=False)
+        )
 
 
 def _head(draft: Draft) -> list[str]:
     name = "".join(c if c.isprintable() else "?" for c in draft.look.name)
-    out = [f"# A first recipe for {name}, suggested from {'all' if draft.look.whole else 'some'} of its lines.", "#"]
-    out.append(f"# Search for {FILL_IN} and NOT SURE, then see what it reads: logtool convert --recipe THIS --try FILE")
+    out = [
+        f"# A first recipe for {name}, suggested from {'all' if draft.look.whole else 'some'} of its lines.",
+        "#",
+    ]
+    out.append(
+        f"# Search for {FILL_IN} and NOT SURE, then see what it reads: logtool convert --recipe THIS --try FILE"
+    )
     if draft.doubts:
         out += ["#", "# What the text does not tell:"]
         for doubt in draft.doubts:
@@ -135,7 +168,9 @@ def _top(draft: Draft) -> list[str]:
     if look.encoding != "utf-8":
         out.append(f"encoding = {plain(look.encoding)}")
     if not roles.times.zone_known:
-        out.append(f'#zone = "UTC"  # {FILL_IN} where the times are local: an IANA name, like "Atlantic/Azores"')
+        out.append(
+            f'#zone = "UTC"  # {FILL_IN} where the times are local: an IANA name, like "Atlantic/Azores"'
+        )
     if slots.slot_s is not None:
         out.append(f"slot_s = {slots.slot_s:g}  # by the differences of the times")
     else:
@@ -145,8 +180,9 @@ def _top(draft: Draft) -> list[str]:
         out.append(f"time_step_s = {slots.step_s:g}  # the times have no seconds")
     if roles.decimal != ".":
         out.append(f"decimal = {plain(roles.decimal)}")
-    if roles.empty:
-        out.append(f"empty = {listed(sorted(roles.empty))}")
+    empty = roles.empty | (draft.second[1].empty if draft.second else set())
+    if empty:
+        out.append(f"empty = {listed(sorted(empty))}")
     skipped = draft.table.header_rows and not _has_header(draft.table)
     if skipped:
         header = look.lines[draft.table.header_rows[0]].text
@@ -159,7 +195,12 @@ def _literal(text: str) -> str:
 
 
 def _has_header(table: Table) -> bool:
-    return isinstance(table.way, SeparatedWay) and bool(table.way.header) and not table.way.rest and not any(table.way.suffixes)
+    return (
+        isinstance(table.way, SeparatedWay)
+        and bool(table.way.header)
+        and not table.way.rest
+        and not any(table.way.suffixes)
+    )
 
 
 def _constants(draft: Draft) -> list[str]:
@@ -180,7 +221,10 @@ def _name(draft: Draft) -> list[str]:
     date, forms, _ = draft.name_date
     pattern = re.sub(r"[0-9]+", lambda digits: f"[0-9]{{{len(digits[0])}}}", _literal(date))
     out = ["", "[name]  # the date in the file's name", f"pattern = {text_of(f'(?P<date>{pattern})')}"]
-    out.append(f"date_form = {plain(forms[0])}" + (f"  # NOT SURE: or {' or '.join(forms[1:])}" if len(forms) > 1 else ""))
+    out.append(
+        f"date_form = {plain(forms[0])}"
+        + (f"  # NOT SURE: or {' or '.join(forms[1:])}" if len(forms) > 1 else "")
+    )
     return out
 
 
@@ -197,7 +241,10 @@ def _rules(draft: Draft) -> list[str]:
     out: list[str] = []
     for rule in draft.others.rules:
         out += _other_rule(rule)
-    return out + _heard(draft)
+    out += _heard(draft, draft.table, draft.roles, "")
+    if draft.second:
+        out += _heard(draft, *draft.second, "heard-shorter")
+    return out
 
 
 def _other_rule(rule: OtherRule) -> list[str]:
@@ -210,13 +257,12 @@ def _other_rule(rule: OtherRule) -> list[str]:
     return out + rule.lines
 
 
-def _heard(draft: Draft) -> list[str]:
-    table, roles = draft.table, draft.roles
+def _heard(draft: Draft, table: Table, roles: Roles, rule_name: str) -> list[str]:
     names = dict(sorted(roles.names.items()))
     where = {**{k: form for k, form in table.where.items()}, **roles.where}
     for n, k in enumerate(k for k in where if k not in names):
         names[k] = f"state_{n + 1}" if n else "state"
-    forms = {k: re.escape(always) if not always else _words(always) for k, always in ((k, "") for k in names) if always}
+    forms: dict[int, str] = {}
     for k, name in names.items():
         if k in where and isinstance(table.way, OrderWay):
             forms[k] = where[k]
@@ -230,8 +276,10 @@ def _heard(draft: Draft) -> list[str]:
     for number, lines in enumerate(variants, 1):
         out += ["", "[[line]]"]
         if number == 1:
-            out += _remarks(draft)
+            out += _remarks(draft, table, roles)
         out.append('kind = "heard"')
+        if rule_name:
+            out.append(f"name = {plain(rule_name)}")
         if number > 1:
             out.append(f'name = "heard-{number}"  # the same with its parts in another order')
         out += lines
@@ -240,17 +288,18 @@ def _heard(draft: Draft) -> list[str]:
         if "date" in names.values():
             out.append(f"date_form = {plain(roles.times.date_form)}")
         guards = {names[k]: text_of(form) for k, form in where.items()}
-        if "time" not in guards and draft.others.left and not lines[0].startswith("pattern") and "time" in names.values():
+        if (
+            "time" not in guards
+            and draft.others.left
+            and not lines[0].startswith("pattern")
+            and "time" in names.values()
+        ):
             k = next(k for k, name in names.items() if name == "time")
             if k in forms and not isinstance(way, JsonWay):
                 guards["time"] = text_of(forms[k])
         if guards:
             out.append(f"where = {inline(guards)}")
     return out
-
-
-def _words(always: str) -> str:
-    return always
 
 
 def _clock_pattern(form: str) -> str:
@@ -265,17 +314,21 @@ def _clock_pattern(form: str) -> str:
     return out
 
 
-def _remarks(draft: Draft) -> list[str]:
+def _remarks(draft: Draft, table: Table, roles: Roles) -> list[str]:
     out = []
-    example = draft.look.lines[draft.table.rows[0]].text.strip()
+    example = draft.look.lines[table.rows[0]].text.strip()
     shown = "".join(c if c.isprintable() else "?" for c in example)
     out.append(f"# as: {shown[:100]}")
-    for k, column in enumerate(draft.table.columns):
-        name = draft.roles.names.get(k, "")
-        note = draft.roles.notes.get(k, "")
+    for k, column in enumerate(table.columns):
+        name = roles.names.get(k, "")
+        note = roles.notes.get(k, "")
         if name:
             unsure = any(d.essential and name.split("_")[0] in d.about for d in draft.doubts)
-            out += comment(f"{column.label} is {name}" + (f": {note}" if note else "") + (" (NOT SURE, see above)" if unsure else ""))
+            out += comment(
+                f"{column.label} is {name}"
+                + (f": {note}" if note else "")
+                + (" (NOT SURE, see above)" if unsure else "")
+            )
         elif any(column.values):
             out += comment(f"{column.label} is not read: {note or 'see above'} ({quoted(column.values, 2)})")
     return out

@@ -23,7 +23,9 @@ class Block(NamedTuple):
     @property
     def commands(self) -> list[str]:
         """The commands of a block for the shell, one a line."""
-        return [line.strip() for line in self.text.splitlines() if line.strip()] if self.kind == "bash" else []
+        return (
+            [line.strip() for line in self.text.splitlines() if line.strip()] if self.kind == "bash" else []
+        )
 
 
 def blocks_of(document: str) -> list[Block]:
@@ -58,7 +60,7 @@ def missing_part(shown: str, printed: str) -> str | None:
     """
     left = _bare(printed)
     for part in re.split(rf"^{re.escape(LEFT_OUT)}\n", _bare(shown), flags=re.MULTILINE):
-        before, found, left = ("\n" + left).partition("\n" + part)
+        _, found, left = ("\n" + left).partition("\n" + part)
         if not found:
             return part.strip("\n")
     return None

@@ -51,7 +51,9 @@ def test_notebook_is_of_the_format() -> None:
     assert all(re.fullmatch(r"[a-zA-Z0-9_-]{1,64}", name) for name in names)
     for cell in stored["cells"]:
         wanted = {"cell_type", "id", "metadata", "source"}
-        assert set(cell) == wanted | ({"execution_count", "outputs"} if cell["cell_type"] == "code" else set())
+        assert set(cell) == wanted | (
+            {"execution_count", "outputs"} if cell["cell_type"] == "code" else set()
+        )
 
 
 def test_links_lead_somewhere() -> None:

@@ -87,7 +87,9 @@ def test_output_is_what_the_program_prints() -> None:
 
 def test_python_example(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.chdir(ROOT)
-    result = doctest.testfile(str(ROOT / "README.md"), module_relative=False, optionflags=doctest.REPORT_NDIFF)
+    result = doctest.testfile(
+        str(ROOT / "README.md"), module_relative=False, optionflags=doctest.REPORT_NDIFF
+    )
     assert result.attempted >= 4
     assert result.failed == 0
 

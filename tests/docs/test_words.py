@@ -17,7 +17,7 @@ LEFT_OUT = {
     ".git", ".venv", ".hypothesis", ".mypy_cache", ".ruff_cache", ".pytest_cache", "__pycache__", "demo",
     "bench", "build", "dist",
 }  # fmt: skip
-ENDINGS = {".py", ".md", ".toml", ".txt", ".js", ".css", ".html", ".log", ".gz", ""}
+ENDINGS = {".py", ".md", ".ipynb", ".toml", ".txt", ".js", ".css", ".html", ".log", ".gz", ""}
 # A prefix of one or two letters, or of a digit and a letter; one digit; one to four letters.
 CALL = re.compile(r"(?<![\w.#%\\-])(?:[A-Z]{1,2}|[0-9][A-Z])[0-9][A-Z]{1,4}(?![\w-])")
 NO_CALLS = {"W3C"}  # words of that form that are none

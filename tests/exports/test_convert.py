@@ -9,6 +9,7 @@ import pytest
 from pyarrow import ipc, parquet
 
 from logtool.exports.formats import FORMATS
+from logtool.records.privacy import Privacy
 from tests.cli.calling import COMMAND, ROOT, call, call_on_terminal
 from tests.exports.logs import export, write_log
 
@@ -106,3 +107,13 @@ def test_notes_tell_what_a_format_cannot_hold(log: Path) -> None:
     told = call("convert", log, "--to", "adi").stderr
     assert "1 receptions name no sender" in told
     assert "6 records are no receptions" in told
+
+
+def test_privacy_options_reach_the_output(log: Path, tmp_path: Path) -> None:
+    words = ("--coarsen", "4", "--without-text", "--hide-senders", "--key", tmp_path / "key")
+    (tmp_path / "key").write_bytes(b"a secret key of 24 bytes")
+    privacy = Privacy(coarsen=4, without_text=True, key=b"a secret key of 24 bytes")
+    for name in ("layout", "geojson"):
+        assert call("convert", log, "--to", name, *words).stdout.encode() == export(
+            name, log, privacy=privacy
+        )

@@ -89,7 +89,9 @@ def _judged(out: bytes) -> tuple[str, str]:
     return (out.decode(), "") if isinstance(judged, Record) else ("", judged)
 
 
-def compare(text: str, data: bytes | str, name: str = "night.txt", first_day: date | None = None) -> list[Line]:
+def compare(
+    text: str, data: bytes | str, name: str = "night.txt", first_day: date | None = None
+) -> list[Line]:
     """Compare the readings of a text line by line, and return them."""
     raw = data.encode() if isinstance(data, str) else data
     found, converter = engine_lines(text, raw, name, first_day)

@@ -69,7 +69,7 @@ FOR_KIND = {
     "noise": ["dbfs", "temperature_c"],
     "stop": ["text"],
     "note": ["text", "own_word"],
-    "carry": ["dial_khz", "dial_hz", "mode", "receiver", "decoder", "place", "antenna", "locator", "sure", "signal_khz"],
+    "carry": ["dial_khz", "dial_hz", "mode", "receiver", "decoder", "place", "antenna", "locator", "signal_khz"],
     "skip": ["text"],
 }  # fmt: skip
 NEEDS = {"watch": "on_s", "noise": "dbfs"}
@@ -165,7 +165,9 @@ def made_kind(rng: Random, kind: str, tag: str) -> Kind:
         names = [piece for piece in pieces if piece not in ("time", "date", "text", "state", "own_word")]
         made.more["carry"] = names[:2]
     if kind not in ("carry", "skip") and rng.random() < 0.3:
-        made.more["constants"] = rng.choice([{"mode": "RULE"}, {"dial_khz": 3578.5}, {"sure": 0.25, "decoder": "r"}])
+        made.more["constants"] = rng.choice(
+            [{"mode": "RULE"}, {"dial_khz": 3578.5}, {"sure": 0.25, "decoder": "r"}]
+        )
     return made
 
 
@@ -199,7 +201,11 @@ def made_text(rng: Random, rules: list[Kind], lines: int) -> str:
     for _ in range(lines):
         at += timedelta(seconds=rng.choice(LATER_S))
         if rng.random() < 0.05:
-            made.append(rng.choice(["", " \t", "// remark", "no line of any rule", '"', "{", "{}", "[1]", "sk?p skip"]))
+            made.append(
+                rng.choice(
+                    ["", " \t", "// remark", "no line of any rule", '"', "{", "{}", "[1]", "sk?p skip"]
+                )
+            )
         elif made and rng.random() < 0.15:
             made.append(rng.choice(made[-4:]))
         else:

@@ -218,12 +218,13 @@ class SlowRecipe:
 
     def _from_signal(self, values: dict[str, str | None]) -> None:
         signal, dial, audio = (_decimal(values[name]) for name in ("signal_hz", "dial_hz", "audio_hz"))
-        if signal is None:
+        if values["signal_hz"] is None:
             return
         if values["dial_hz"] is None:
-            values["dial_hz"] = str((signal - (audio or 0)).quantize(Decimal(1), ROUND_HALF_UP))
-        elif values["audio_hz"] is None and dial is not None:
-            values["audio_hz"] = plain(signal - dial)
+            below = None if signal is None else (signal - (audio or 0)).quantize(Decimal(1), ROUND_HALF_UP)
+            values["dial_hz"] = "?" if below is None else str(below)
+        elif values["audio_hz"] is None:
+            values["audio_hz"] = "?" if signal is None or dial is None else plain(signal - dial)
 
     def _numbered(self, at: datetime, line: str) -> str:
         """Return the line with a number where it is an equal one within a step."""

@@ -63,8 +63,12 @@ def number(text: str, name: str) -> str:
     if not re.fullmatch(r"[+-]?(\d+\.?\d*|\.\d+)", text, re.ASCII):
         return UNREADABLE
     exact = Decimal(text) * Decimal(factor)
+    if goal != "power_dbm" and abs(exact) > Decimal("1e20"):
+        return UNREADABLE
     if goal == "power_dbm":
         if exact <= 0:
+            return UNREADABLE
+        if exact > Decimal("1e300"):
             return UNREADABLE
         exact = Decimal(repr(10 * math.log10(float(exact)) + 30)).quantize(Decimal("0.001"), ROUND_HALF_UP)
     elif goal == "dial_hz":

@@ -15,9 +15,11 @@ import zstandard
 
 from logtool.errors import FileError
 from logtool.records.opening import open_logs
+from logtool.records.recipes.blocks import blocks_of
 from logtool.records.recipes.loading import recipe_of
 from logtool.records.recipes.recipe import RecipeError
-from tests.recipes.comparing import compare, compare_ledger, engine_lines, in_blocks_of, recipe, rule
+from logtool.records.sources import Source, Text
+from tests.recipes.comparing import compare, compare_ledger, engine_lines, in_blocks_of, recipe, rule, toml
 
 RULE = rule(pattern=r"(?P<time>\S+) (?P<sender>\S+) ?(?P<text>.*)")
 TEXT = recipe(RULE)
@@ -35,6 +37,7 @@ def encoded(encoding: str) -> str:
         ("utf-8", GOOD + "\u00e9\u20ac\n".encode() + GOOD + b"\xe9\n" + GOOD + b"x\n\xed\xa0\x80\n" + GOOD + b"\xc3"),
         ("latin-1", GOOD + b"\xe9\xff\n" + GOOD + b"\x85\n" + GOOD + b"x"),
         ("cp1252", GOOD + b"\x80 \x81\n" + GOOD + b"\x80\n" + GOOD + b"\xe9"),
+        ("latin-1", b"\xe9"),
         ("ascii", GOOD + b"\xe9\n" + GOOD + b"x\n"),
         ("cp437", GOOD + b"\x9b\n"),
         ("utf-8-sig", b"\xef\xbb\xbf" + GOOD + b"x\n"),
@@ -55,20 +58,32 @@ def test_lines_of_another_encoding_cost_their_own_line() -> None:
     assert [line.reason for line in found] == ["", "bad-encoding", ""]
 
 
-def test_every_encoding_that_python_knows_is_read_or_refused() -> None:
+@pytest.mark.filterwarnings("ignore:invalid escape sequence")
+def test_every_encoding_that_python_knows_is_read_or_refused(tmp_path: Path) -> None:
+    (tmp_path / "a.txt").write_bytes(GOOD + b"\xff\xfe\x80 \\x \\u12\n")
+    source = Source("a.txt", tmp_path / "a.txt")
     read = 0
-    for encoding in sorted({*encodings.aliases.aliases.values(), "utf-8", "undefined", "unicode_escape", "a\0b"}):
+    for encoding in sorted({*encodings.aliases.aliases.values(), "undefined", "idna", "punycode", "a\0b"}):
         try:
-            text = encoded(encoding) if "\0" not in encoding else recipe(RULE, 'encoding = "a\\u0000b"\n')
-            loaded = recipe_of(text, "r.toml")
+            loaded = recipe_of(recipe(RULE, f"encoding = {toml(encoding)}\n"), "r.toml")
         except RecipeError as error:
             assert "`encoding`" in str(error)  # noqa: PT017 - the others are read
             continue
-        decoder = codecs.getincrementaldecoder(loaded.encoding)("replace")
-        decoder.decode(GOOD + b"\xff\xfe\x80 \\x \\u12\n")
-        decoder.decode(b"", final=True)
+        try:
+            block = b"".join(blocks_of(Text(source), loaded.encoding))
+        except FileError as error:
+            assert str(error).startswith("a.txt: it cannot be read as")  # noqa: PT017
+            continue
+        block.decode(errors="strict" if loaded.encoding != "utf-8" else "replace")
         read += 1
-    assert read > 50
+    assert read > 80
+
+
+def test_utf16_without_its_mark_is_named(tmp_path: Path) -> None:
+    (tmp_path / "a.txt").write_bytes("2026-03-01T18:00:00Z Q1A".encode("utf-16-le"))
+    made = recipe_of(encoded("utf-16"), "r.toml")
+    with pytest.raises(FileError, match=r"a\.txt: it cannot be read as utf-16 .*like utf-16-le"):
+        open_logs(tmp_path, recipe=made)
 
 
 @pytest.mark.parametrize("size", [30, 1 << 20])
@@ -77,7 +92,16 @@ def test_every_encoding_that_python_knows_is_read_or_refused() -> None:
     [
         GOOD + b"x\r\n" + GOOD + b"y\r\r\n" + GOOD + b"z\r",
         GOOD + b"a\rb\n" + b"\r\n\r\n \r\n\t\n",
-        GOOD + b"\x00\n" + GOOD + b"\x01\n" + GOOD + b"\x7f\n" + GOOD + "\u0080\n".encode() + GOOD + b"\x1b[0m\n",
+        GOOD
+        + b"\x00\n"
+        + GOOD
+        + b"\x01\n"
+        + GOOD
+        + b"\x7f\n"
+        + GOOD
+        + "\u0080\n".encode()
+        + GOOD
+        + b"\x1b[0m\n",
         b"\x00" + GOOD + b"\n" + b"\x01\n" + b"\x00\n",
         b"\xef\xbb\xbf" + GOOD + b"\n" + b"\xef\xbb\xbf" + GOOD + b"\n",
         b"\xef\xbb\xbf\xef\xbb\xbf" + GOOD + b"\n",
@@ -101,7 +125,18 @@ def test_odd_bytes(data: bytes, size: int, monkeypatch: pytest.MonkeyPatch) -> N
 
 @pytest.mark.parametrize("length", [3900, 4000, 4001, 8100, 8192, 9000, 100_000, 2_000_000])
 def test_long_lines(length: int, tmp_path: Path) -> None:
-    data = GOOD + b"x" * length + b"\n" + GOOD + b"y\n" + b"z" * length + b"\n" + GOOD + b"\\" * (length // 2) + b"\n"
+    data = (
+        GOOD
+        + b"x" * length
+        + b"\n"
+        + GOOD
+        + b"y\n"
+        + b"z" * length
+        + b"\n"
+        + GOOD
+        + b"\\" * (length // 2)
+        + b"\n"
+    )
     compare_ledger(tmp_path, TEXT, {"a.txt": data})
 
 
@@ -115,7 +150,9 @@ def test_packed_files_are_the_same_text(tmp_path: Path) -> None:
     data = GOOD + b"a\r\n\nx\n" + GOOD + b"\xff\n"
     wanted, _ = engine_lines(TEXT, data)
     assert engine_lines(TEXT, gzip.compress(data), "night.txt.gz")[0] == wanted
-    assert engine_lines(TEXT, gzip.compress(data[:30]) + gzip.compress(data[30:]), "night.txt.gz")[0] == wanted
+    assert (
+        engine_lines(TEXT, gzip.compress(data[:30]) + gzip.compress(data[30:]), "night.txt.gz")[0] == wanted
+    )
     assert engine_lines(TEXT, zstandard.compress(data), "night.txt.zst")[0] == wanted
     utf16 = data[:30].decode().encode("utf-16")
     assert engine_lines(TEXT, zstandard.compress(utf16), "n.zst")[0] == engine_lines(TEXT, utf16)[0]
@@ -158,5 +195,7 @@ def test_standard_input(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None
 
 def test_a_recipe_that_is_not_utf8_is_refused(tmp_path: Path) -> None:
     (tmp_path / "r.toml").write_bytes(b"recipe = 1\nabout = '\xe9'\n")
-    with pytest.raises(FileError, match=r"r\.toml: a recipe is UTF-8 text, and this is not; save it as UTF-8"):
+    with pytest.raises(
+        FileError, match=r"r\.toml: a recipe is UTF-8 text, and this is not; save it as UTF-8"
+    ):
         open_logs(tmp_path, recipe=tmp_path / "r.toml")

@@ -12,7 +12,9 @@ COLUMNS = ["time", "sender"]
 CARRIED = rule("carry", name="day", pattern=r"== (?P<date>\S+)", date_form="iso")
 
 
-def times_of(text: str, lines: list[str], name: str = "night.txt", first_day: date | None = None) -> list[str]:
+def times_of(
+    text: str, lines: list[str], name: str = "night.txt", first_day: date | None = None
+) -> list[str]:
     """Return the time or the reason of each line that is not the carry rule's, after comparing all."""
     found = compare(text, "\n".join(lines) + "\n", name, first_day)
     return [line.became.split("\t")[0] or line.reason for line in found if line.rule != "day"]
@@ -54,7 +56,9 @@ def test_every_form_of_time(form: str, good: str, bad: str) -> None:
     assert times_of(text, lines, first_day=date(2024, 2, 29)) == wanted
 
 
-@pytest.mark.parametrize("far", ["9" * 17, "9223372036855000", "-" + "9" * 15, "253402300800000", "1" * 30, "-1e99", "inf"])
+@pytest.mark.parametrize(
+    "far", ["9" * 17, "9223372036855000", "-" + "9" * 15, "253402300800000", "1" * 30, "-1e99", "inf"]
+)
 @pytest.mark.parametrize("form", ["unix_s", "unix_ms"])
 def test_times_beyond_all_bounds_cost_their_own_line(form: str, far: str) -> None:
     text = recipe(heard(form), "zone = 'Asia/Kathmandu'\nslot_s = 15\ntime_marks = 'end'\n")
@@ -90,7 +94,9 @@ def test_the_files_name_goes_before_the_option() -> None:
     named = "[name]\npattern = '_(?P<date>\\d{6})'\ndate_form = '%y%m%d'\n"
     text = recipe(heard("%H%M"), named)
     assert times_of(text, ["1800,Q1A"], "rx_260301.txt", date(2020, 1, 1)) == ["2026-03-01T18:00:00Z"]
-    assert times_of(recipe(heard("%H%M")), ["1800,Q1A"], first_day=date(2020, 1, 1)) == ["2020-01-01T18:00:00Z"]
+    assert times_of(recipe(heard("%H%M")), ["1800,Q1A"], first_day=date(2020, 1, 1)) == [
+        "2020-01-01T18:00:00Z"
+    ]
     assert times_of(recipe(heard("%H%M")), ["1800,Q1A"]) == ["no-date"]
 
 
@@ -137,9 +143,19 @@ def test_a_fall_is_a_new_day_or_a_step(before: str, after: str, days: int, steps
 
 
 def test_steps_are_counted_over_blocks(monkeypatch: pytest.MonkeyPatch) -> None:
-    lines = ["18:00:00,Q1A", "18:10:00,Q1A", "18:09:00,Q1A", "x", "18:20:00,Q1A", "18:10:30,Q1A", "18:11:00,Q1A"]
+    lines = [
+        "18:00:00,Q1A",
+        "18:10:00,Q1A",
+        "18:09:00,Q1A",
+        "x",
+        "18:20:00,Q1A",
+        "18:10:30,Q1A",
+        "18:11:00,Q1A",
+    ]
     in_blocks_of(monkeypatch, 13)
-    _, converter = engine_lines(recipe(heard("%H:%M:%S")), "\n".join(lines).encode(), first_day=date(2026, 3, 1))
+    _, converter = engine_lines(
+        recipe(heard("%H:%M:%S")), "\n".join(lines).encode(), first_day=date(2026, 3, 1)
+    )
     (note,) = converter.notes()
     assert note.startswith("the time of day falls 2 times by up to 570 s without a new day, first in line 3")
 
@@ -173,5 +189,3 @@ def test_a_file_with_dates_and_one_without_do_not_share_them() -> None:
     text = recipe(CARRIED + heard("%H:%M"))
     assert times_of(text, ["== 2026-03-01", "18:00,Q1A"]) == ["2026-03-01T18:00:00Z"]
     assert times_of(text, ["18:00,Q1A"]) == ["no-date"]
-
-

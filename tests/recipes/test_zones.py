@@ -37,7 +37,9 @@ def test_local_times_near_every_change(name: str) -> None:
     near = [int(s) + rng.choice([-7201, -3601, -3600, -1800, -1, 0, 1, 1799, 3600, 7200]) for s in instants_s]
     near += [rng.randrange(0, 4_102_444_800) for _ in range(40)]
     local = [
-        (EPOCH + timedelta(seconds=s + round(offset_s(zone, s)))).replace(microsecond=rng.choice([0, 250_000]))
+        (EPOCH + timedelta(seconds=s + round(offset_s(zone, s)))).replace(
+            microsecond=rng.choice([0, 250_000])
+        )
         for s in near
     ]
     local += [at + timedelta(minutes=rng.choice([-90, -30, 30, 90])) for at in local]

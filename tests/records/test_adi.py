@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import gzip
 import hashlib
+import io
 import resource
 import time
 from itertools import pairwise
@@ -12,14 +13,18 @@ from pathlib import Path
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+from pyproj import Geod
 
+from logtool import open_logs, receptions
 from logtool.errors import FileError
+from logtool.exports.formats import write_as
 from logtool.records.adi import scan_adi
 from logtool.records.adi_fields import ascii_more, ascii_text, more_of_ascii, text_of_ascii
 from logtool.records.adi_tags import MOST_FIELD_BYTES, AdiEntry, adi_entries
 from logtool.records.judge import Record, judge
 from logtool.records.scan import Scan, ScanOptions
 from logtool.records.sources import Source
+from logtool.tables.choice import choose
 from tests.places.sources import read
 from tests.records.slow_reader import COLUMNS
 
@@ -298,3 +303,35 @@ def test_hostile_files_cost_no_time_and_no_memory(
 def test_a_file_that_cannot_be_read_says_so(tmp_path: Path) -> None:
     with pytest.raises(FileError, match=r"none\.adi: cannot be read"):
         scan_adi(Source("none.adi", tmp_path / "none.adi"), tmp_path / "lines", ScanOptions())
+
+
+@pytest.mark.parametrize("name", ["a.adi", "A.ADIF", "a.adi.gz"])
+def test_commands_read_adi_by_its_name(name: str, tmp_path: Path) -> None:
+    place = "<MY_GRIDSQUARE:6>JN58td<GRIDSQUARE:4>JO62"
+    data = f"header<EOH>{ENTRY}{place}<EOR>{ENTRY}{place}<EOR><CALL:4>Q7XS<EOR>".encode()
+    (tmp_path / name).write_bytes(gzip.compress(data) if name.endswith(".gz") else data)
+    with open_logs(tmp_path / name) as logs:
+        (file,) = logs.inputs
+        assert (file.lines, file.records, file.repeated, dict(file.reasons)) == (3, 1, 1, {"bad-time": 1})
+        assert [(number, reason) for _, number, reason, _ in logs.set_aside()] == [(3, "bad-time")]
+        (row,) = receptions(logs).to_dict("records")
+    assert (row["sender"], row["receiver_locator"], row["antenna"]) == ("Q1ABC", "JN58td", "unknown")
+    # JN58td to JO62: 48.145833 N 11.625 E to 52.5 N 13 E, the middles of the cells.
+    assert row["distance_km"] == pytest.approx(
+        Geod(ellps="WGS84").inv(11.625, 48.145833333, 13, 52.5)[2] / 1000
+    )
+    assert row["uncertainty_km"] > 88
+
+
+def test_layout_states_the_places_of_an_adi_file(tmp_path: Path) -> None:
+    (tmp_path / "a.adi").write_text(f"{ENTRY}<MY_GRIDSQUARE:6>JN58td<APP_LOGTOOL_ANTENNA:4>loop<EOR>")
+    with open_logs(tmp_path / "a.adi") as logs:
+        out = io.BytesIO()
+        write_as("layout", logs, choose(), out)
+        wanted = receptions(logs)
+    stated = b"2026-03-01T18:10:15Z\tsetup\tlistener\t7075500\t\t\t\t\t\t\tJN58td\t\t\tantenna=loop"
+    assert stated in out.getvalue().splitlines()
+    (tmp_path / "a.log").write_bytes(out.getvalue())
+    with open_logs(tmp_path / "a.log") as logs:
+        assert receptions(logs).equals(wanted)
+        assert [file.records for file in logs.inputs] == [2]

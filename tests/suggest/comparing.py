@@ -84,12 +84,16 @@ def outcome_of(shape: Shape, folder: Path) -> Outcome:
                 for name in FIELDS:
                     if not _same(name, record[name], truth.get(name)):
                         outcome.wrong[name] += 1
-                        outcome.examples.setdefault(name, f"{one.line!r}: {record[name]!r}, not {truth.get(name)}")
+                        outcome.examples.setdefault(
+                            name, f"{one.line!r}: {record[name]!r}, not {truth.get(name)}"
+                        )
         for number in set(shape.truth) - {one.number for one in tried}:
             outcome.wrong["lines"] += 1
             outcome.examples.setdefault("lines", f"line {number} was not reached")
     named = {word for doubt in suggestion.doubts for word in doubt.split(":")[0].split(", ")}
-    outcome.silent = {name for name in outcome.wrong if name not in named and not (name == "lines" and "time" in named)}
+    outcome.silent = {
+        name for name in outcome.wrong if name not in named and not (name == "lines" and "time" in named)
+    }
     return outcome
 
 

@@ -130,7 +130,9 @@ def shape_of(seed: int) -> Shape:
     if not {"dial"} & columns and not one_dial and not {"signal", "audio"} <= columns:
         made.heard[:] = [h for h in made.heard if h.dial_hz == made.heard[0].dial_hz]
     form = plan.stamp if "stamp" in columns else plan.clock
-    zone = ZoneInfo("UTC" if form == "unix" or form.endswith("Z") or "utc" in plan.names.values() else plan.zone)
+    zone = ZoneInfo(
+        "UTC" if form == "unix" or form.endswith("Z") or "utc" in plan.names.values() else plan.zone
+    )
     out = Lines(_told(columns))
     if plan.header and plan.way not in ("json", "pairs"):
         out.add(_join(plan, [plan.names[name] for name in plan.columns]))
@@ -155,7 +157,11 @@ def shape_of(seed: int) -> Shape:
         if "%S" not in form and form != "unix":
             other["time"] = h.time.replace(second=0)
         out.heard(_line(plan, cells), h, **other)
-    fill = {} if radio and not ("signal" in columns and "audio" not in columns) else {"dial_hz": str(made.heard[0].dial_hz)}
+    fill = (
+        {}
+        if radio and not ("signal" in columns and "audio" not in columns)
+        else {"dial_hz": str(made.heard[0].dial_hz)}
+    )
     if zone.key != "UTC":
         fill["zone"] = f'"{zone.key}"'
     name = f"log{first_day:%Y-%m-%d}.txt" if plan.date_from == "name" else f"log-{'abc'[seed % 3]}.txt"
@@ -165,7 +171,11 @@ def shape_of(seed: int) -> Shape:
 
 def _told(columns: set[str]) -> list[str]:
     told = ["time", "dial_hz"]
-    told += [target for name, target in (("snr", "snr_db"), ("late", "late_s"), ("audio", "audio_hz"), ("mode", "mode")) if name in columns]
+    told += [
+        target
+        for name, target in (("snr", "snr_db"), ("late", "late_s"), ("audio", "audio_hz"), ("mode", "mode"))
+        if name in columns
+    ]
     if "signal" in columns:
         told.append("audio_hz")
     if "text" in columns:
@@ -212,8 +222,19 @@ def _join(plan: Plan, cells: list[str]) -> str:
     if plan.way in SEPARATORS:
         return SEPARATORS[plan.way].join(cells)
     if plan.way == "fixed":
-        widths = {"stamp": 26, "clock": 13, "day": 13, "text": 0, "sender": 11, "addressee": 11, "dial": 13, "signal": 13}
-        return "".join(f"{cell:<{widths.get(name, 10)}} " for name, cell in zip(plan.columns, cells, strict=True)).rstrip()
+        widths = {
+            "stamp": 26,
+            "clock": 13,
+            "day": 13,
+            "text": 0,
+            "sender": 11,
+            "addressee": 11,
+            "dial": 13,
+            "signal": 13,
+        }
+        return "".join(
+            f"{cell:<{widths.get(name, 10)}} " for name, cell in zip(plan.columns, cells, strict=True)
+        ).rstrip()
     return " ".join(cells)
 
 
@@ -224,7 +245,9 @@ def _line(plan: Plan, cells: dict[str, str]) -> str:
                 for name, cell in cells.items()}  # fmt: skip
         return json.dumps(told)
     if plan.way == "pairs":
-        items = [f'{plan.names[n]}="{c}"' if " " in c else f"{plan.names[n]}={c}" for n, c in cells.items() if c]
+        items = [
+            f'{plan.names[n]}="{c}"' if " " in c else f"{plan.names[n]}={c}" for n, c in cells.items() if c
+        ]
         return " ".join(items)
     return _join(plan, [cells[name] for name in plan.columns])
 

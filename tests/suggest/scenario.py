@@ -52,7 +52,9 @@ def make(
     while len(stations) < 45:
         call = f"Q{draw.randrange(10)}{''.join(draw.choices(LETTERS, k=draw.choice([2, 3, 3])))}"
         stations.append(call + draw.choice(["", "", "", "", "", "/P"]))
-    locators = {call: f"{draw.choice('IJKLM')}{draw.choice('LMNOP')}{draw.randrange(100):02d}" for call in stations}
+    locators = {
+        call: f"{draw.choice('IJKLM')}{draw.choice('LMNOP')}{draw.randrange(100):02d}" for call in stations
+    }
     audio = {call: draw.randrange(220, 2700) for call in stations}
     level = {call: draw.randrange(-22, 8) for call in stations}
     heard: list[Heard] = []

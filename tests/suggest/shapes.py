@@ -72,7 +72,9 @@ def journal() -> Shape:
     made, out = make(5), Lines(("time", "dial_hz", "snr_db", "sender", "addressee", "locator"))
     for i, h in enumerate(made.heard):
         if i % 70 == 5:
-            out.add(f"{h.time:%b} {h.time.day:>2} {h.time:%H:%M:%S} shed clockd[88]: offset checked, all well")
+            out.add(
+                f"{h.time:%b} {h.time.day:>2} {h.time:%H:%M:%S} shed clockd[88]: offset checked, all well"
+            )
         out.heard(
             f"{h.time:%b} {h.time.day:>2} {h.time:%H:%M:%S} shed ear[412]: got <{h.text}> at {h.snr_db} dB", h
         )
@@ -96,7 +98,10 @@ def carried() -> Shape:
 
 def unix() -> Shape:
     """Seconds since 1970 and TABs, no header; sender, addressee and locator in columns."""
-    made, out = make(7), Lines(("time", "dial_hz", "audio_hz", "snr_db", "mode", "sender", "addressee", "locator"))
+    made, out = (
+        make(7),
+        Lines(("time", "dial_hz", "audio_hz", "snr_db", "mode", "sender", "addressee", "locator")),
+    )
     for h in made.heard:
         out.heard(
             "\t".join([h.sender, h.addressee or "CQ", h.locator, str(h.snr_db), str(int(h.time.timestamp())),
@@ -120,12 +125,17 @@ def fixed() -> Shape:
 
 def wide() -> Shape:
     """UTF-16, a header every hundred lines, a remark with an umlaut in each line."""
-    made, out = make(9, count=450), Lines(("time", "dial_hz", "audio_hz", "snr_db", "sender", "addressee", "locator"))
+    made, out = (
+        make(9, count=450),
+        Lines(("time", "dial_hz", "audio_hz", "snr_db", "sender", "addressee", "locator")),
+    )
     header = "When (UTC),Place,Dial MHz,Tone,Level dB,Text"
     for i, h in enumerate(made.heard):
         if i % 100 == 0:
             out.add(header)
-        out.heard(f"{h.time:%Y/%m/%d %H:%M:%S},Hütte,{h.dial_hz / 1e6:.4f},{h.audio_hz},{h.snr_db},{h.text}", h)
+        out.heard(
+            f"{h.time:%Y/%m/%d %H:%M:%S},Hütte,{h.dial_hz / 1e6:.4f},{h.audio_hz},{h.snr_db},{h.text}", h
+        )
     shape = out.shape("wide", "wide.txt")
     shape.stored = b"\xff\xfe" + shape.stored.decode().replace("\n", "\r\n").encode("utf-16-le")
     return shape
@@ -142,14 +152,18 @@ def status() -> Shape:
             minute += timedelta(seconds=60)
             out.add(f"{minute:%Y-%m-%d %H:%M:%S} listened 60 s, queue {made.draw.randrange(4)}")
         out.heard(
-            f"{h.time:%Y-%m-%d %H:%M:%S} {h.mode} {h.dial_hz / 1000:.1f} {h.audio_hz} {h.snr_db} {h.late_s} [{h.text}]", h
+            f"{h.time:%Y-%m-%d %H:%M:%S} {h.mode} {h.dial_hz / 1000:.1f} {h.audio_hz} {h.snr_db} {h.late_s} [{h.text}]",
+            h,
         )
     return out.shape("status", "status.log")
 
 
 def megahertz() -> Shape:
     """The signal's own frequency in MHz, bars between columns, no audio; the dial is the user's."""
-    made, out = make(11), Lines(("time", "dial_hz", "audio_hz", "snr_db", "mode", "sender", "addressee", "locator"))
+    made, out = (
+        make(11),
+        Lines(("time", "dial_hz", "audio_hz", "snr_db", "mode", "sender", "addressee", "locator")),
+    )
     for h in made.heard:
         signal = (h.dial_hz + h.audio_hz) / 1e6
         out.heard(f"{h.time:%Y%m%d%H%M%S}|{signal:.6f}|{h.mode}|{h.snr_db}|{h.text}", h)
@@ -173,4 +187,18 @@ def binary() -> Shape:
     return Shape("binary", "picture.log", bytes(draw.randrange(256) for _ in range(20_000)))
 
 
-DEVELOPED = (name_dated, semicolons, json_nested, pairs, journal, carried, unix, fixed, wide, status, megahertz, no_log, binary)
+DEVELOPED = (
+    name_dated,
+    semicolons,
+    json_nested,
+    pairs,
+    journal,
+    carried,
+    unix,
+    fixed,
+    wide,
+    status,
+    megahertz,
+    no_log,
+    binary,
+)

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import codecs
 from collections.abc import Iterator
+from itertools import chain
 
 from logtool.records.scan import whole_lines
-from logtool.records.sources import Text
+from logtool.records.sources import Text, UnreadableError
 
 JOINED_BYTES = 24 << 20  # text that the engine is given at a time; our choice
 _UTF16_MARKS = (codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE)
@@ -32,21 +33,22 @@ def blocks_of(text: Text, encoding: str, *, joined_bytes: int = JOINED_BYTES) ->
 
 
 def _recoded(text: Text, encoding: str) -> Iterator[bytes]:
-    decoder = None
-    first = True
+    pieces = iter(text)
     start = b""
-    for piece in text:
-        if first:
-            start += piece
-            if len(start) < _MARK_BYTES:
-                continue
-            if start.startswith(_UTF16_MARKS):
-                encoding = "utf-16"
-            if encoding != "utf-8":
-                decoder = codecs.getincrementaldecoder(encoding)("replace")
-            piece, first = start, False
-        yield decoder.decode(piece).encode("utf-8", "replace") if decoder else piece
-    if first and start:
-        yield start
-    if decoder:
-        yield decoder.decode(b"", final=True).encode("utf-8", "replace")
+    while len(start) < _MARK_BYTES and (piece := next(pieces, b"")):
+        start += piece
+    if start.startswith(_UTF16_MARKS):
+        encoding = "utf-16"
+    if encoding == "utf-8":
+        yield from chain([start], pieces)
+        return
+    decoder = codecs.getincrementaldecoder(encoding)("replace")
+    for piece in chain([start], pieces, [b""]):
+        try:
+            recoded = decoder.decode(piece, final=not piece)
+        except UnicodeError as error:
+            raise UnreadableError(
+                f"{text.source.name}: it cannot be read as {encoding} ({error}); name another encoding in the recipe, "
+                "like utf-16-le"
+            ) from error
+        yield recoded.encode("utf-8", "replace")

@@ -163,16 +163,15 @@ class Converter:
             CREATE OR REPLACE TEMP TABLE {name} AS
             SELECT i, {column(target)} AS value FROM parsed WHERE rule IN ({rules}) AND {column(target)} IS NOT NULL
             UNION ALL SELECT -1::BIGINT, ?::VARCHAR""", [self._carried[target]])  # fmt: skip
-        last = self._connection.execute(f"SELECT arg_max(value, i) FROM {name}").fetchone()
-        assert last is not None
-        self._carried[target] = last[0]
+        ((last,),) = self._connection.execute(f"SELECT arg_max(value, i) FROM {name}").fetchall()
+        self._carried[target] = last
 
     def _note_earliest(self) -> None:
         if self.place_and_antenna is None:
             return
         for receiver, time_us, dial_hz in self._connection.execute("""
                 SELECT receiver, min(time_us), arg_min(dial_hz, (time_us, dial_hz)) FROM made
-                WHERE receiver IS NOT NULL AND time_us IS NOT NULL AND dial_hz IS NOT NULL
+                WHERE receiver IS NOT NULL AND time_us >= 0 AND regexp_full_match(dial_hz, '[0-9]+')
                 GROUP BY receiver""").fetchall():
             if receiver not in self.earliest or time_us < self.earliest[receiver][0]:
                 self.earliest[receiver] = (time_us, dial_hz)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import difflib
 import re
 from collections.abc import Iterator
+from itertools import takewhile
 from typing import Any
 
 from logtool.records.recipes.patterns import fault_of
@@ -18,11 +19,19 @@ _WORDS = {str: "a text", int: "a whole number", bool: "true or false", dict: "a 
 class Fields:
     """One table of a recipe; what was not taken when it is finished is a key that nobody knows."""
 
-    def __init__(self, told: dict[str, Any], text: str, name: str, where: tuple[str, int] = ("", 0)) -> None:
+    def __init__(
+        self,
+        told: dict[str, Any],
+        text: str,
+        name: str,
+        where: tuple[str, int] = ("", 0),
+        inside: str | None = None,
+    ) -> None:
         self._told = told
         self._text = text
         self._name = name
         self._where = where  # the table's heading and how many of that heading come before
+        self._inside = inside  # the key under that heading that this table is the value of
         self._taken: set[str] = set()
 
     def __contains__(self, key: str) -> bool:
@@ -34,29 +43,36 @@ class Fields:
     def error(self, key: str | None, message: str) -> RecipeError:
         """Return the error that says where in the recipe something is wrong."""
         heading = self._where[0]
-        path = ".".join(part for part in (heading.strip("[]"), key) if part)
-        line = self._line_of(key)
+        path = ".".join(part for part in (heading.strip("[]"), self._inside, key) if part)
+        line = self._line_of(self._inside or key)
         place = f"{self._name}{f', line {line}' if line else ''}"
         return RecipeError(f"{place}: {f'`{path}`: ' if path else ''}{message}")
 
     def _line_of(self, key: str | None) -> int | None:
+        """Return the number of the line of a key in this table, else of the table's heading."""
         heading, before = self._where
-        lines = self._text.splitlines()
-        start = 0
+        outer = heading.strip("[]")
+        begin = 0
+        block = lines = [line.strip() for line in self._text.splitlines()]
         if heading:
-            starts = [i for i, line in enumerate(lines) if line.strip().startswith(heading)]
+            starts = [i for i, line in enumerate(lines) if line.startswith((heading, f"[{outer}."))]
+            starts = [i for i in starts if lines[i].startswith(heading) or not heading.startswith("[[")]
             if before >= len(starts):
                 return None
-            start = starts[before]
-        if key is None:
-            return start + 1 if heading else None
-        pattern = re.compile(rf"""\s*\[*["']?{re.escape(key)}["']?\s*[=\]]""")
-        for i in range(start, len(lines)):
-            if i > start and heading and lines[i].startswith("["):
-                break
-            if pattern.match(lines[i]):
-                return i + 1
-        return start + 1 if heading else None
+            begin = starts[before]
+            block = [lines[begin], *takewhile(lambda line: not line.startswith("[["), lines[begin + 1 :])]
+        name = re.escape(key or "")
+        own = [line if not line.startswith("[") else "" for line in block]
+        stop = next((i for i, line in enumerate(block) if i and line.startswith("[")), len(block))
+        for i, line in enumerate(own[:stop]):
+            if key is not None and re.match(rf"""["']?{name}["']?\s*[=.]""", line):
+                return begin + i + 1
+        for i, line in enumerate(block):
+            if key is not None and re.match(
+                rf"""\[+{f"{outer}[.]" if outer else ""}["']?{name}["']?[].]""", line
+            ):
+                return begin + i + 1
+        return begin + 1 if heading else None
 
     def take(self, key: str, kind: Any, default: Any = _NEEDED) -> Any:
         """Return a value of a kind (or one of several kinds)."""
@@ -142,8 +158,9 @@ class Fields:
         """Return a table in this one, empty where it is not given."""
         told = self.take(key, dict, {})
         heading = self._where[0].strip("[]")
-        inner = ("[" + key + "]", 0) if not heading else self._where
-        return Fields(told, self._text, self._name, inner)
+        if heading:
+            return Fields(told, self._text, self._name, self._where, key)
+        return Fields(told, self._text, self._name, (f"[{key}]", 0))
 
     def tables(self, key: str) -> list[Fields]:
         """Return the tables of a list, like all [[line]]."""

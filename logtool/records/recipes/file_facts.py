@@ -33,11 +33,9 @@ def named_values(
         return {}, None
     groups = groups_of(pattern)
     listed = ", ".join(sql_text(group or f"_{i}") for i, group in enumerate(["whole_name", *groups]))
-    row = connection.execute(
-        f"SELECT regexp_extract(?, ?, [{listed}])", [Path(file_name).name, f"({pattern})"]
-    ).fetchone()
-    assert row is not None
-    found: dict[str, Any] = row[0]
+    found: dict[str, Any] = _one(
+        connection, f"SELECT regexp_extract(?, ?, [{listed}])", [Path(file_name).name, f"({pattern})"]
+    )
     if not found["whole_name"]:
         raise RecipeError(
             f"{file_name}: its name does not match `name.pattern` of {recipe.name} ({pattern!r}); "
@@ -61,9 +59,7 @@ def named_values(
 
 def day_of(connection: duckdb.DuckDBPyConnection, written: str, form: str) -> int | None:
     """Return the midnight of a written date in microseconds since 1970, or None where it is not of the form."""
-    row = connection.execute(f"SELECT {date_sql(sql_text(written), form)}").fetchone()
-    assert row is not None
-    day_us: int | None = row[0]
+    day_us: int | None = _one(connection, f"SELECT {date_sql(sql_text(written), form)}", [])
     return day_us
 
 
@@ -91,17 +87,22 @@ def header_of(
     wanted = {k: rule for k, rule in enumerate(recipe.rules) if rule.form.header is not None}
     if not wanted:
         return None, {}
-    line, number = "", 0
-    for raw in block.split(b"\n"):
-        number += 1
+    for number, raw in enumerate(block.split(b"\n"), 1):  # noqa: B007 - told below
         line = raw.removesuffix(b"\r").decode("utf-8", "replace")
-        if line.strip() and not any(_is_found(connection, pattern, line) for pattern in recipe.skip):
+        if line.strip(" \t") and not any(_is_found(connection, pattern, line) for pattern in recipe.skip):
             break
+    else:
+        return None, {}
     columns = {}
     for k, rule in wanted.items():
         assert rule.form.header is not None
         assert rule.form.separator is not None
-        names = [name.strip() for name in next(csv.reader([line], delimiter=rule.form.separator), [])]
+        try:
+            names = [name.strip() for name in next(csv.reader([line], delimiter=rule.form.separator), [])]
+        except csv.Error as error:
+            raise RecipeError(
+                f"{file_name}, line {number}: {recipe.name} wants a header there, and it cannot be read ({error})"
+            ) from error
         piece_of = {name: piece for piece, name in rule.form.header.items()}
         for name, piece in piece_of.items():
             if names.count(name) != 1:
@@ -114,5 +115,10 @@ def header_of(
 
 
 def _is_found(connection: duckdb.DuckDBPyConnection, pattern: str, line: str) -> bool:
-    row = connection.execute("SELECT regexp_matches(?, ?)", [line, pattern]).fetchone()
-    return bool(row and row[0])
+    return bool(_one(connection, "SELECT regexp_matches(?, ?)", [line, pattern]))
+
+
+def _one(connection: duckdb.DuckDBPyConnection, query: str, values: list[str]) -> Any:
+    """Return the one value of a query; read to its end, since the connection would else stay busy with it."""
+    ((value,),) = connection.execute(query, values).fetchall()
+    return value

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import codecs
+import difflib
 import os
 import re
 import tomllib
@@ -14,9 +15,11 @@ from logtool.records.recipes.fields import Fields
 from logtool.records.recipes.names import NUMBER_TARGETS, PIECES, target_of
 from logtool.records.recipes.patterns import groups_of, template_pattern
 from logtool.records.recipes.recipe import (
+    BAD_ENCODING,
     CARRY,
     HEADER_RULE,
     MORE_COLUMNS,
+    NO_RULE,
     RECIPE_VERSION,
     SKIP,
     SPACE,
@@ -36,6 +39,8 @@ DEFAULT_MESSAGES = (  # common practice, no source: the station called first, th
 NEVER_LOCATORS = ("RR73",)
 _FORMS = ("pattern", "separator", "fixed", "json")
 _RULE_NAME = r"[a-z][a-z0-9-]{0,31}"
+_OF_LEDGER = (HEADER_RULE, NO_RULE, BAD_ENCODING)  # what the ledger calls lines that are of no rule
+_OF_LINES = ("time", "date", "text", "locator")  # what only a line can say
 _MOST_KIB = 1024
 _IN_USE = (
     "i",
@@ -78,7 +83,7 @@ def recipe_of(text: str, name: str) -> Recipe:
         told = tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
         raise Fields({}, text, name).error(
-            None, f"it is no TOML ({error}); a pattern is best written in '...'"
+            None, f"it is no TOML ({error}); is it the recipe? A pattern is best written in '...'"
         ) from error
     top = Fields(told, text, name)
     version = top.take("recipe", int)
@@ -93,8 +98,12 @@ def recipe_of(text: str, name: str) -> Recipe:
     rules = _rules(top, keep)
     named = top.table("name")
     name_pattern = named.pattern("pattern")
-    if name_pattern is not None:
-        _check_names(named, "pattern", [n for n in groups_of(name_pattern) if n], keep)
+    name_pieces = () if name_pattern is None else tuple(name for name in groups_of(name_pattern) if name)
+    if "name" in top and not name_pieces:
+        raise named.error("pattern", "it needs a pattern with a named group, like (?P<receiver>...)")
+    _check_names(named, "pattern", name_pieces, keep)
+    for word in {*name_pieces} & {*_OF_LINES} - {"date"}:
+        raise named.error("pattern", f"{word!r} cannot come from a file's name: it belongs to a line")
     message = top.table("message") if "message" in top else None
     recipe = Recipe(
         name=name,
@@ -113,7 +122,7 @@ def recipe_of(text: str, name: str) -> Recipe:
         constants=_constants(top.table("constants"), keep),
         name_pattern=name_pattern,
         name_date_form=named.date_form("date_form"),
-        values=_values(top, keep, rules),
+        values=_values(top, {*name_pieces, *(piece for rule in rules for piece in rule.pieces)}),
         messages=None if message is None else _messages(message),
         never_locators=NEVER_LOCATORS if message is None else message.words("never_locators", NEVER_LOCATORS),
     )
@@ -127,8 +136,7 @@ def _encoding(top: Fields) -> str:
     encoding: str = top.take("encoding", str, "utf-8")
     try:
         info = codecs.lookup(encoding)
-        "".encode(info.name)  # some codecs are of other things than text, or stop at what is not theirs
-        codecs.getincrementaldecoder(info.name)("replace").decode(bytes(range(256)), final=True)
+        "".encode(info.name)  # some codecs are of other things than text
     except (LookupError, ValueError) as error:
         raise top.error(
             "encoding", f"there is no encoding {encoding!r}; common are utf-8, utf-16, latin-1, cp1252"
@@ -166,9 +174,9 @@ def _rules(top: Fields, keep: tuple[str, ...]) -> tuple[Rule, ...]:
 def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
     kind = fields.one_of("kind", (*KINDS, CARRY, SKIP), needed=True)
     name = fields.take("name", str, kind)
-    if not re.fullmatch(_RULE_NAME, name) or name == HEADER_RULE:
+    if not re.fullmatch(_RULE_NAME, name) or name in _OF_LEDGER:
         raise fields.error(
-            "name", f"{name!r}: a rule's name has small letters, digits and -; not `{HEADER_RULE}`"
+            "name", f"{name!r}: a rule's name has small letters, digits and -; not {', '.join(_OF_LEDGER)}"
         )
     given = [way for way in _FORMS if way in fields]
     if len(given) != 1:
@@ -176,33 +184,36 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
             "kind", f"it needs one of {', '.join(_FORMS)}; it has {' and '.join(given) or 'none'}"
         )
     form, pieces = _form(fields, given[0])
+    naming = "columns" if given[0] == "separator" else given[0]  # the key that names the pieces
     twice = sorted({piece for piece in pieces if pieces.count(piece) > 1})
     if twice:
-        raise fields.error(given[0], f"{twice[0]!r} stands twice; give one of them another name")
+        raise fields.error(naming, f"{twice[0]!r} stands twice; give one of them another name")
     for piece in pieces:
         if not re.fullmatch(KEY_FORM, piece):
-            raise fields.error(given[0], f"{piece!r}: a piece's name has small letters, digits and _")
+            raise fields.error(naming, f"{piece!r}: a piece's name has small letters, digits and _")
     where = fields.strings("where")
     for piece, pattern in where.items():
         fields.check_pattern("where", pattern)
         if piece not in pieces:
             raise fields.error("where", f"{piece!r} is no piece of this line; it has {', '.join(pieces)}")
     wanted = tuple(piece for piece in pieces if piece not in where or piece in PIECES or piece in keep)
-    _check_names(fields, given[0], wanted, keep)
+    _check_names(fields, naming, wanted, keep)
     carry = fields.words("carry", wanted if kind == CARRY else ())
     for piece in carry:
         if piece not in wanted:
             raise fields.error("carry", f"{piece!r} is no piece of this line; it has {', '.join(wanted)}")
+        if piece == "time" and "carry" in fields:
+            raise fields.error("carry", "a time holds for its own line only; a `date` can be carried")
     if kind == CARRY and not carry:
-        raise fields.error(given[0], "a line of the kind `carry` needs a piece that has a name")
+        raise fields.error(naming, "a line of the kind `carry` needs a piece that has a name")
     time_form = fields.time_form("time_form", "iso")
     date_form = fields.date_form("date_form")
     if "date" in wanted and date_form is None:
         raise fields.error(
-            given[0], 'it has a piece `date`: say how it is written, like date_form = "%Y-%m-%d"'
+            naming, 'it has a piece `date`: say how it is written, like date_form = "%Y-%m-%d"'
         )
     if kind not in (CARRY, SKIP) and "time" not in wanted:
-        raise fields.error(given[0], f"a line of the kind `{kind}` needs a piece `time`")
+        raise fields.error(naming, f"a line of the kind `{kind}` needs a piece `time`")
     constants = _constants(fields.table("constants"), keep)
     return Rule(name, kind, form, wanted, where, time_form, date_form, carry, constants)
 
@@ -225,7 +236,7 @@ def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
     separator = fields.take("separator", str)
     if separator != SPACE and len(separator) != 1:
         raise fields.error("separator", f"{separator!r}: one character, or {SPACE!r} for runs of blanks")
-    if separator in ('"', " ", "\n"):
+    if separator in ('"', " ") or not (separator.isprintable() or separator == "\t"):
         raise fields.error("separator", f"{separator!r} cannot separate columns; write {SPACE!r} for blanks")
     if fields.take("header", bool, False):
         if separator == SPACE:
@@ -235,6 +246,8 @@ def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
         header = fields.strings("columns")
         if not header:
             raise fields.error("columns", 'with header = true it is a table, like { time = "UTC" }')
+        if len(set(header.values())) < len(header):
+            raise fields.error("columns", "it gives one column two names; give it one")
         return Form(separator=separator, header=header), tuple(header)
     columns = fields.words("columns")
     more = columns[-1:] == (MORE_COLUMNS,)
@@ -262,16 +275,17 @@ def _check_names(fields: Fields, key: str, names: tuple[str, ...] | list[str], k
         if name in PIECES or name in keep:
             continue
         alike = [known for known in PIECES if known.startswith(name) or name.startswith(known.split("_")[0])]
-        hint = f"did you mean {' or '.join(alike[:3])}? " if alike else ""
+        alike = alike or difflib.get_close_matches(name, PIECES, 3)
+        hint = f"; did you mean {' or '.join(alike[:3])}?" if alike else "."
         raise fields.error(
-            key, f"{name!r} is no known name; {hint}The names stand in docs/recipes.md; list others in `keep`"
+            key, f"{name!r} is no known name{hint} The names stand in docs/recipes.md; list others in `keep`"
         )
 
 
 def _constants(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
     constants = {}
     for name in list(fields):
-        if name in ("locator", "time", "date", "text"):
+        if name in _OF_LINES:
             hint = (
                 "the receiver's own locator is called `place`"
                 if name == "locator"
@@ -297,11 +311,11 @@ def _check_clean(fields: Fields, key: str, text: str) -> None:
         raise fields.error(key, f"{text!r} has a character that no value can hold, like a TAB")
 
 
-def _values(top: Fields, keep: tuple[str, ...], rules: tuple[Rule, ...]) -> dict[str, dict[str, str]]:
+def _values(top: Fields, pieces: set[str]) -> dict[str, dict[str, str]]:
     values = {}
     table = top.table("values")
     for name in list(table):
-        if not any(name in rule.pieces for rule in rules):
+        if name not in pieces:
             raise table.error(name, f"no line has a piece {name!r}")
         values[name] = table.strings(name)
         for text in values[name].values():
@@ -338,7 +352,8 @@ def _check_whole(top: Fields, recipe: Recipe) -> None:
     if not any(rule.is_record for rule in recipe.rules):
         raise top.error("line", 'no [[line]] makes a record; one needs kind = "heard"')
     for rule in recipe.rules:
-        own = anywhere | {target_of(name) for name in (*rule.pieces, *rule.constants)}
+        of_line = {target_of(name) for name in (*rule.pieces, *rule.constants)}
+        own = anywhere | of_line
         if rule.is_record and "receiver" not in own:
             raise top.error(
                 "constants", f'no receiver for lines {rule.name!r}: add receiver = "NAME" to [constants]'
@@ -348,9 +363,14 @@ def _check_whole(top: Fields, recipe: Recipe) -> None:
                 "constants",
                 f"no dial for lines {rule.name!r}: add dial_hz = ... (or dial_khz) to [constants]",
             )
-        if rule.kind == "watch" and "on_s" not in own:
+        if rule.kind == "watch" and "on_s" not in of_line:
             raise top.error(
                 "constants", f"lines {rule.name!r} need on_s: add constants = {{ on_s = 15 }} to it"
             )
-        if rule.kind == "noise" and "dbfs" not in own:
+        if rule.kind == "noise" and "dbfs" not in of_line:
             raise top.error("constants", f"lines {rule.name!r} need a piece `dbfs`")
+        if rule.kind == "setup" and not ("antenna" in own and (of_line & {"locator"} or "place" in own)):
+            raise top.error(
+                "constants",
+                f"lines {rule.name!r} need a place and an antenna: add them to [constants] or to the line",
+            )

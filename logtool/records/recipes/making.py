@@ -9,7 +9,15 @@ from logtool.records.recipes.cutting import BLANK, ENCODING, HEADER, NONE, SKIPP
 from logtool.records.recipes.names import COLUMN_TARGETS, target_of
 from logtool.records.recipes.patterns import groups_of
 from logtool.records.recipes.recipe import BAD_ENCODING, BAD_TIME, NO_DATE, NO_RULE, Recipe, Rule
-from logtool.records.recipes.values import CALLS, assisted_sql, column, constant_value, trimmed_sql, value_sql
+from logtool.records.recipes.values import (
+    CALLS,
+    UNREADABLE,
+    assisted_sql,
+    column,
+    constant_value,
+    trimmed_sql,
+    value_sql,
+)
 
 MESSAGE_PARTS = ("sender", "addressee", "locator", "report_db", "power_dbm")
 _OF_SETUPS = ("place", "antenna")  # values that lines of other kinds take only from themselves
@@ -151,8 +159,14 @@ def _takes_elsewhere(kind: str, target: str) -> bool:
 def _from_signal(source: str) -> str:
     """Return the relation with the dial and the audio frequency that the signal's own frequency gives."""
     signal, audio = (f"try_cast({name} AS {_SIGNAL})" for name in ("signal_hz", "audio_hz"))
-    dial_hz = f"coalesce(dial_hz, round({signal} - coalesce({audio}, 0))::BIGINT::VARCHAR)"
-    audio_hz = f"coalesce(audio_hz, {trimmed_sql(f'({signal} - try_cast(dial_hz AS {_SIGNAL}))::{_SIGNAL}')})"
+    below = f"try_cast(round({signal} - coalesce({audio}, 0)) AS BIGINT)::VARCHAR"
+    above = trimmed_sql(f"try_cast({signal} - try_cast(dial_hz AS {_SIGNAL}) AS {_SIGNAL})")
+    has_one = "dial_hz IS NULL AND signal_hz IS NOT NULL"
+    dial_hz = f"CASE WHEN {has_one} THEN coalesce({below}, {UNREADABLE}) ELSE dial_hz END"
+    has_both = "signal_hz IS NOT NULL AND dial_hz IS NOT NULL"
+    audio_hz = (
+        f"CASE WHEN audio_hz IS NULL AND {has_both} THEN coalesce({above}, {UNREADABLE}) ELSE audio_hz END"
+    )
     return f"SELECT * REPLACE ({dial_hz} AS dial_hz, {audio_hz} AS audio_hz) FROM ({source})"
 
 

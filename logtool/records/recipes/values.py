@@ -11,7 +11,7 @@ from logtool.records.recipes.recipe import Recipe
 
 BLANKS = sql_text(" \t")
 CALLS = ("sender", "addressee")
-_UNREADABLE = sql_text(
+UNREADABLE = sql_text(
     "?"
 )  # stands for what is no number, so that the judge sets the line aside by its column
 _DECIMAL = "DECIMAL(24, 9)"
@@ -88,7 +88,7 @@ def constant_value(piece: str, value: str) -> tuple[str, str]:
             number = 10 * number.log10() + 30
         return target, f"{number.quantize(Decimal(places), ROUND_HALF_UP).normalize():f}"
     except InvalidOperation:
-        return target, _UNREADABLE[1:-1]
+        return target, UNREADABLE[1:-1]
 
 
 def _number_sql(text: str, piece: str, decimal: str) -> str:
@@ -97,21 +97,23 @@ def _number_sql(text: str, piece: str, decimal: str) -> str:
         text = f"replace({text}, {sql_text(decimal)}, '.')"
     if piece in WATTS:
         watts = f"try_cast({text} AS DOUBLE) * {factor}"
-        number = f"CASE WHEN {watts} > 0 THEN round(10 * log10({watts}) + 30, 3)::DECIMAL(18, 3) END"
+        number = (
+            f"CASE WHEN {watts} > 0 THEN try_cast(round(10 * log10({watts}) + 30, 3) AS DECIMAL(18, 3)) END"
+        )
     elif target in INTEGER_TARGETS:
         if factor == "1":
-            whole = f"coalesce({_whole(text, factor)}, {_UNREADABLE})"
+            whole = f"coalesce({_whole(text, factor)}, {UNREADABLE})"
             return f"CASE WHEN contains({text}, '.') THEN {whole} ELSE {text} END"
-        return f"CASE WHEN {text} IS NOT NULL THEN coalesce({_whole(text, factor)}, {_UNREADABLE}) END"
+        return f"CASE WHEN {text} IS NOT NULL THEN coalesce({_whole(text, factor)}, {UNREADABLE}) END"
     elif factor == "1":
         return f"CASE WHEN starts_with({text}, '+') THEN substring({text}, 2) ELSE {text} END"
     else:
-        number = f"(try_cast({text} AS {_DECIMAL}) * {factor})::DECIMAL(24, 6)"
-    return f"CASE WHEN {text} IS NOT NULL THEN coalesce({trimmed_sql(number)}, {_UNREADABLE}) END"
+        number = f"try_cast(try_cast({text} AS {_DECIMAL}) * {factor} AS DECIMAL(24, 6))"
+    return f"CASE WHEN {text} IS NOT NULL THEN coalesce({trimmed_sql(number)}, {UNREADABLE}) END"
 
 
 def _whole(text: str, factor: str) -> str:
-    return f"round(try_cast({text} AS {_DECIMAL}) * {factor})::BIGINT::VARCHAR"
+    return f"try_cast(round(try_cast({text} AS {_DECIMAL}) * {factor}) AS BIGINT)::VARCHAR"
 
 
 def trimmed_sql(number: str) -> str:

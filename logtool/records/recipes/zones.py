@@ -10,7 +10,9 @@ import numpy as np
 
 _HOUR_S = 3600
 _FIRST, _LAST = -2 * 86_400, 4_102_444_800 + 2 * 86_400  # 1970 to 2099, with room
-_STEP_S = 3 * 86_400  # no zone changes and changes back within so little; checked by a test against every hour
+_STEP_S = (
+    3 * 86_400
+)  # no zone changes and changes back within so little; checked by a test against every hour
 _EPOCH = datetime(1970, 1, 1, tzinfo=UTC)
 SECOND_US = 1_000_000
 
