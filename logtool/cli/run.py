@@ -57,11 +57,13 @@ def choice_of(words: dict[str, Any]) -> Choice:
 def opened(words: dict[str, Any], *, with_digest: bool) -> Iterator[Logs]:
     """Open the logs of a call, with progress on a terminal; write what was set aside if it is wanted."""
     from logtool.cli.memory import keep_freed_memory
+    from logtool.cli.privacy import privacy_of
     from logtool.cli.progress import ProgressBar
     from logtool.records.opening import day_us_of, open_with, recipe_for
     from logtool.records.reader import OpenOptions
 
     keep_freed_memory()
+    privacy = privacy_of(words)
     recipe = recipe_for(words["recipe"])
     day_us = day_us_of(words["date"], with_recipe=recipe)
     with ProgressBar(quiet=words["quiet"]) as bar:
@@ -72,6 +74,7 @@ def opened(words: dict[str, Any], *, with_digest: bool) -> Iterator[Logs]:
             progress=bar,
             recipe=recipe,
             day_us=day_us,
+            privacy=privacy,
         )
         with open_with(words["paths"], words["at"], words["antenna_name"], options) as logs:
             _spare_inputs(logs, words)

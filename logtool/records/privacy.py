@@ -5,7 +5,7 @@ from __future__ import annotations
 import base64
 import hashlib
 import hmac
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 COARSE_CHARACTERS = (4, 6, 8)  # what a locator can be cut to; a setup's needs four
 PSEUDONYM_CHARACTERS = 10  # 50 bits: two of 100 000 senders share one by a chance of 4 in a million
@@ -21,7 +21,7 @@ class Privacy:
 
     coarsen: int | None = None  # characters that a locator keeps
     without_text: bool = False
-    key: bytes | None = None  # the secret that hides senders
+    key: bytes | None = field(default=None, repr=False)  # the secret that hides senders
 
     def __bool__(self) -> bool:
         return self.coarsen is not None or self.without_text or self.key is not None

@@ -17,6 +17,7 @@ from logtool.records.ledger import FileLedger
 from logtool.records.marks import MARK
 from logtool.records.privacy import Privacy
 from logtool.records.progress import LOOK_SHARE, RECIPE_SHARE, Polled, Progress
+from logtool.records.recipes.recipe import RecipeError
 from logtool.records.scan import LEAST_MEMORY_MB, EndlessLineError, Scan, ScanOptions, scan
 from logtool.records.sources import STDIN, Source, UnreadableError, sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
@@ -40,6 +41,7 @@ class Setup:
     locator: str
     antenna: str
     dial_hz: int
+    more: str  # its details as written
 
 
 @dataclass(frozen=True)
@@ -229,7 +231,10 @@ class Logs:
 
         Each record stands there once; what is not known is missing; `time` is in UTC.
         """
-        return self.to_arrow().to_pandas()
+        import pandas as pd
+        import pyarrow as pa
+
+        return self.to_arrow().to_pandas(types_mapper={pa.int64(): pd.Int64Dtype()}.get)
 
     def _scan(self, source: Source, path: Path, options: ScanOptions) -> Scan:
         """Look over a file: ADI by its name; by the recipe, where there is one, unless it is in the layout."""
@@ -247,7 +252,8 @@ class Logs:
 
     def _look_over(self, paths: tuple[str | os.PathLike[str], ...]) -> list[Scan]:
         unread: list[str] = []
-        sources = sources_of(paths, unread if self._options.others_too else None)
+        by_recipe = self._options.recipe is not None
+        sources = sources_of(paths, unread if self._options.others_too else None, with_tables=by_recipe)
         sizes = [source.path.stat().st_size if source.path else 0 for source in sources]
         done, whole = 0, max(1, sum(sizes))
 
@@ -263,7 +269,7 @@ class Logs:
                 refused = seen.refused and f"{source.name}: {seen.refused}"
             except EndlessLineError as error:
                 refused = str(error)
-            except UnreadableError as error:
+            except (UnreadableError, RecipeError) as error:
                 if not self._options.others_too:
                     raise
                 unread.append(str(error))
@@ -391,6 +397,7 @@ def _setups(scans: list[Scan]) -> dict[str, list[Setup]]:
                 record.field("locator"),
                 record.keys["antenna"],
                 int(record.field("dial_hz")),
+                record.field("more"),
             )
     setups: dict[str, list[Setup]] = {}
     for key in sorted(latest):

@@ -15,6 +15,7 @@ from logtool.errors import FileError, UsageError
 
 STDIN = "-"
 LOG_ENDINGS = (".log", ".txt", ".tsv")
+TABLE_ENDINGS = (".csv", ".json", ".jsonl")  # of logs that only a recipe can read
 PACKED_ENDINGS = (".gz", ".zst")
 ADI_ENDINGS = (".adi", ".adif")
 BLOCK_BYTES = 1 << 19  # a block of text that is looked at in one go; our choice
@@ -43,7 +44,9 @@ class UnreadableError(FileError):
     """A file or folder that is not there or may not be read; the others can be."""
 
 
-def sources_of(paths: tuple[str | os.PathLike[str], ...], unread: list[str] | None = None) -> list[Source]:
+def sources_of(
+    paths: tuple[str | os.PathLike[str], ...], unread: list[str] | None = None, *, with_tables: bool = False
+) -> list[Source]:
     """Return the files behind the paths: sorted by path, standard input last, each real file once.
 
     A folder stands for all files in it, deeper ones too, that end in `.log`, `.txt` or `.tsv`, or in
@@ -55,6 +58,8 @@ def sources_of(paths: tuple[str | os.PathLike[str], ...], unread: list[str] | No
         What the user names.
     unread : list of str, optional
         Takes a message for each path that does not exist and folder that cannot be listed.
+    with_tables : bool
+        Folders stand for files that end in `.csv`, `.json` or `.jsonl` as well: a recipe will read them.
 
     Raises
     ------
@@ -71,11 +76,12 @@ def sources_of(paths: tuple[str | os.PathLike[str], ...], unread: list[str] | No
             raise UnreadableError(message)
         unread.append(message)
 
+    endings = LOG_ENDINGS + (TABLE_ENDINGS if with_tables else ())
     names: list[str] = []
     for path in paths:
         name = os.fspath(path)
         if name != STDIN and os.path.isdir(name):  # not by `Path`, to which an empty name is the folder here
-            names += _files_in(Path(name), refuse)
+            names += _files_in(Path(name), endings, refuse)
         else:
             names.append(name)
     sources: list[Source] = []
@@ -97,7 +103,7 @@ def shown(name: str) -> str:
     return os.fsencode(name).decode("utf-8", "backslashreplace") if name else "''"
 
 
-def _files_in(folder: Path, refuse: Callable[[str], None]) -> list[str]:
+def _files_in(folder: Path, endings: tuple[str, ...], refuse: Callable[[str], None]) -> list[str]:
     def unlisted(error: OSError) -> None:
         refuse(f"{shown(str(error.filename))}: the folder cannot be listed ({error.strerror})")
 
@@ -109,7 +115,7 @@ def _files_in(folder: Path, refuse: Callable[[str], None]) -> list[str]:
             stem = file.lower()
             for ending in PACKED_ENDINGS:
                 stem = stem.removesuffix(ending)
-            if stem.endswith(LOG_ENDINGS):
+            if stem.endswith(endings):
                 found.append(str(Path(base) / file))
     return found
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections import Counter
 from dataclasses import dataclass
+from itertools import pairwise
 
 from logtool.suggest.doubts import Doubt
 from logtool.suggest.hints import meanings_of, unit_of
@@ -12,11 +13,26 @@ from logtool.suggest.values import ENOUGH, given, is_number, number_of
 
 # The widest limits of the amateur bands (ITU Radio Regulations, Article 5, from memory), kHz.
 _BANDS_KHZ = (
-    (135.7, 137.8), (472, 479), (1800, 2000), (3500, 4000), (5250, 5450), (7000, 7300), (10_100, 10_150),
-    (14_000, 14_350), (18_068, 18_168), (21_000, 21_450), (24_890, 24_990), (28_000, 29_700), (50_000, 54_000),
-    (70_000, 70_500), (144_000, 148_000), (220_000, 225_000), (420_000, 450_000), (902_000, 928_000),
+    (135.7, 137.8),
+    (472, 479),
+    (1800, 2000),
+    (3500, 4000),
+    (5250, 5450),
+    (7000, 7300),
+    (10_100, 10_150),
+    (14_000, 14_350),
+    (18_068, 18_168),
+    (21_000, 21_450),
+    (24_890, 24_990),
+    (28_000, 29_700),
+    (50_000, 54_000),
+    (70_000, 70_500),
+    (144_000, 148_000),
+    (220_000, 225_000),
+    (420_000, 450_000),
+    (902_000, 928_000),
     (1_240_000, 1_300_000),
-)  # fmt: skip
+)
 _BELOW_KHZ = 3.0  # a dial may lie below the band by the width of the audio
 UNIT_KHZ = {"Hz": 0.001, "kHz": 1.0, "MHz": 1000.0}
 _AUDIO_TOP_HZ = 6000  # our choice: the widest audio of a receiver for speech, and some room
@@ -111,7 +127,7 @@ def could_be_audio(column: Column) -> bool:
 def _counts(written: list[str]) -> bool:
     """Return whether numbers only ever rise by one, as those of lines."""
     numbers = [number_of(value) for value in written]
-    steps = Counter(b - a for a, b in zip(numbers, numbers[1:], strict=False))
+    steps = Counter(b - a for a, b in pairwise(numbers))
     return bool(steps) and steps[1.0] >= 0.9 * (len(numbers) - 1)
 
 
@@ -138,14 +154,19 @@ def name_radio(
             name = "signal"
             if _is_coarse(one):
                 doubts.append(
-                    Doubt("dial_hz, audio_hz", "many different radio frequencies in whole kHz: they could be dials"
-                          " or signals; read as signals")
-                )  # fmt: skip
+                    Doubt(
+                        "dial_hz, audio_hz",
+                        "many different radio frequencies in whole kHz: they could be dials"
+                        " or signals; read as signals",
+                    )
+                )
         else:
             doubts.append(
-                Doubt("dial_hz, audio_hz", "the radio frequencies vary much and are not some dials plus the audio;"
-                      " left out")
-            )  # fmt: skip
+                Doubt(
+                    "dial_hz, audio_hz",
+                    "the radio frequencies vary much and are not some dials plus the audio; left out",
+                )
+            )
             continue
         if not one.sure:
             doubts.append(

@@ -75,14 +75,21 @@ def find_slots(moments: list[datetime | None], form: str, parts: list[int]) -> S
             found.slot_s = step_s
         elif shortest is not None:
             found.doubts.append(
-                Doubt("slot_s", f"all times lie {step_s:g} s apart or multiples of it, but never follow each other so closely;"
-                      " give the length of a slot if you know it", essential=False)
-            )  # fmt: skip
+                Doubt(
+                    "slot_s",
+                    f"all times lie {step_s:g} s apart or multiples of it, but never follow each other so closely; give"
+                    " the length of a slot if you know it",
+                    essential=False,
+                )
+            )
         if phase_s:
             found.doubts.append(
-                Doubt("time", f"the times lie {phase_s:g} s behind the multiples of {step_s:g} s, so they may be neither the start"
-                      " nor the end of a slot")
-            )  # fmt: skip
+                Doubt(
+                    "time",
+                    f"the times lie {phase_s:g} s behind the multiples of {step_s:g} s, so they may be neither the"
+                    " start nor the end of a slot",
+                )
+            )
         return found
     for step_s in (7.5, 3.75):
         if is_cut_grid(known, step_s):

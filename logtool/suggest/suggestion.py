@@ -5,21 +5,23 @@ from __future__ import annotations
 import os
 from dataclasses import dataclass, replace
 
+from logtool.suggest.day_order import date_in_name
 from logtool.suggest.doubts import Doubt
+from logtool.suggest.draft import Draft
 from logtool.suggest.fixed import fixed_table
 from logtool.suggest.looking import Look, look_at
 from logtool.suggest.numbers import spread_of
+from logtool.suggest.order_way import OrderWay
 from logtool.suggest.others import find_others
 from logtool.suggest.pairs import PairsWay, pairs_table
-from logtool.suggest.positions import OrderWay, order_table
+from logtool.suggest.positions import order_table
 from logtool.suggest.roles import Roles, find_roles
 from logtool.suggest.slots import find_slots
 from logtool.suggest.structured import SEPARATORS, SeparatedWay, json_table, separated_table
 from logtool.suggest.tables import Table, holds_call, score
 from logtool.suggest.timeforms import shared_forms
-from logtool.suggest.times import date_in_name
 from logtool.suggest.values import given
-from logtool.suggest.writing import Draft, no_structure, written
+from logtool.suggest.writing import no_structure, written
 
 _LEAST_SCORE = 1.5
 _LEAST_SECOND = 5  # lines
@@ -183,7 +185,7 @@ def _draft(look: Look, table: Table, roles: Roles) -> Draft:
     second = _second(look, table, roles)
     named = date_in_name(look.name) if not times.with_year else None
     taken = set(table.rows) | set(table.header_rows) | (set(second[0].rows) if second else set())
-    dial_known = roles.has("dial_hz")
+    dial_known = roles.has("dial_hz") or (roles.has("signal_hz") and roles.has("audio_hz"))
     others = find_others(list(look.lines), taken, times, dated=times.dated, dial_known=dial_known)
     slots = find_slots(times.moments, times.time_form, [look.lines[row].part for row in table.rows])
     doubts = [*look.doubts, *table.doubts, *roles.doubts, *slots.doubts, *others.doubts]

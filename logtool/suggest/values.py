@@ -11,7 +11,8 @@ from logtool.records.callsigns import COMPOUND_CALL
 ENOUGH = 0.97  # of the values have to be of a kind; the rest may be damaged; our choice
 FEW_WORDS = 8  # so many different values are few; our choice
 EMPTY_WORDS = frozenset(
-    ("-", "--", "---", "----", "?", "??", "*", "N/A", "n/a", "NA", "NULL", "null", "None", "none", "nil", "nan", "NaN", "unknown", ".", "_", "~~")
+    ("-", "--", "---", "----", "?", "??", "*", ".", "_", "~~", "N/A", "n/a", "NA",
+     "NULL", "null", "None", "none", "nil", "nan", "NaN", "unknown")
 )  # fmt: skip
 CALLING_WORDS = frozenset(("CQ", "QRZ", "DE"))  # words of a message's beginning that are no call signs
 _CALL = re.compile(rf"<?{COMPOUND_CALL}>?|<\.\.\.>")

@@ -87,7 +87,8 @@ def _name_mode(roles: Roles, columns: list[Column], wordy: list[int]) -> None:
             roles.doubts.append(
                 Doubt(
                     "mode, locator",
-                    f"{columns[clear[0]].label} ({quoted(columns[clear[0]].values)}) is taken as the mode; it has the form of locators too",
+                    f"{columns[clear[0]].label} ({quoted(columns[clear[0]].values)}) is taken as the mode; it has the"
+                    " form of locators too",
                 )
             )
         roles.notes[clear[0]] = f"few words of letters and digits: {quoted(columns[clear[0]].values)}"

@@ -3,55 +3,18 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass, field
 
 from logtool.suggest.doubts import Doubt
+from logtool.suggest.draft import Draft
 from logtool.suggest.looking import Look
-from logtool.suggest.others import OtherRule, Others
-from logtool.suggest.pairs import PairsWay
-from logtool.suggest.positions import OrderWay
-from logtool.suggest.roles import Roles
-from logtool.suggest.slots import Slots
-from logtool.suggest.structured import JsonWay, SeparatedWay
+from logtool.suggest.rule_text import literal, rules_text
+from logtool.suggest.structured import SeparatedWay
 from logtool.suggest.tables import Table
-from logtool.suggest.timeforms import ISO, has_date
-from logtool.suggest.toml import comment, inline, listed, plain, text_of
-from logtool.suggest.values import quoted
+from logtool.suggest.toml import comment, listed, plain, text_of
 
 FILL_IN = "FILL IN"
 _STAND_INS = {"receiver": '"receiver"', "dial_hz": "1", "dial_khz": "1", "date": ""}
 _SHOWN_LINES = 5
-_CLOCK_PATTERNS = {"%H": "[0-9]{1,2}", "%I": "[0-9]{1,2}", "%M": "[0-9]{2}", "%S": "[0-9]{2}", "%f": "[0-9]{1,6}",
-                   "%p": "[AaPp][Mm]", "%Y": "[0-9]{4}", "%y": "[0-9]{2}", "%m": "[0-9]{1,2}", "%d": " ?[0-9]{1,2}",
-                   "%b": "[A-Za-z]{3}", "%B": "[A-Za-z]+", "%j": "[0-9]{3}"}  # fmt: skip
-_ISO_PATTERN = "[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(?::[0-9]{2})?(?:[.,][0-9]+)?(?: ?Z| ?[+-][0-9]{2}:?[0-9]*)?"
-
-
-@dataclass
-class Draft:
-    """All that goes into a recipe."""
-
-    look: Look
-    table: Table
-    roles: Roles
-    others: Others
-    slots: Slots
-    name_date: tuple[str, list[str], re.Match[str]] | None
-    second: tuple[Table, Roles] | None  # messages that lack a column
-    doubts: list[Doubt] = field(default_factory=list)
-
-    @property
-    def needs_date(self) -> bool:
-        """Whether the day of the times has to come from somewhere else than the text."""
-        carried = "date" in self.others.carried
-        return not self.roles.times.with_year and not carried and self.name_date is None
-
-    @property
-    def dial_known(self) -> bool:
-        """Whether lines or the lines before them give the dial, or it follows from signal and audio."""
-        roles = self.roles
-        both = roles.has("signal_hz") and roles.has("audio_hz")
-        return roles.has("dial_hz") or both or any("dial" in name for name in self.others.carried)
 
 
 def written(draft: Draft) -> tuple[str, str]:
@@ -63,7 +26,7 @@ def written(draft: Draft) -> tuple[str, str]:
         *_constants(draft),
         *_name(draft),
         *_values(draft),
-        *_rules(draft),
+        *rules_text(draft),
         *_message(draft),
     ]
     recipe = "\n".join([*head, *body]) + "\n"
@@ -135,7 +98,8 @@ def _settle(draft: Draft) -> None:
         doubts.append(
             Doubt(
                 "time",
-                f"NOT SURE of the order in the date {draft.name_date[0]!r} of the file's name: {' or '.join(draft.name_date[1])}",
+                f"NOT SURE of the order in the date {draft.name_date[0]!r} of the file's name:"
+                f" {' or '.join(draft.name_date[1])}",
             )
         )
     if not draft.dial_known:
@@ -186,12 +150,8 @@ def _top(draft: Draft) -> list[str]:
     skipped = draft.table.header_rows and not _has_header(draft.table)
     if skipped:
         header = look.lines[draft.table.header_rows[0]].text
-        out.append(f"skip = {listed(['^' + _literal(header) + '$'])}  # the line that names the columns")
+        out.append(f"skip = {listed(['^' + literal(header) + '$'])}  # the line that names the columns")
     return out
-
-
-def _literal(text: str) -> str:
-    return "".join("\\" + c if c in ".^$*+?()[]{}|\\" else r"\t" if c == "\t" else c for c in text)
 
 
 def _has_header(table: Table) -> bool:
@@ -219,7 +179,7 @@ def _name(draft: Draft) -> list[str]:
     if draft.name_date is None or "date" in draft.others.carried:
         return []
     date, forms, _ = draft.name_date
-    pattern = re.sub(r"[0-9]+", lambda digits: f"[0-9]{{{len(digits[0])}}}", _literal(date))
+    pattern = re.sub(r"[0-9]+", lambda digits: f"[0-9]{{{len(digits[0])}}}", literal(date))
     out = ["", "[name]  # the date in the file's name", f"pattern = {text_of(f'(?P<date>{pattern})')}"]
     out.append(
         f"date_form = {plain(forms[0])}"
@@ -237,103 +197,6 @@ def _values(draft: Draft) -> list[str]:
     return out
 
 
-def _rules(draft: Draft) -> list[str]:
-    out: list[str] = []
-    for rule in draft.others.rules:
-        out += _other_rule(rule)
-    out += _heard(draft, draft.table, draft.roles, "")
-    if draft.second:
-        out += _heard(draft, *draft.second, "heard-shorter")
-    return out
-
-
-def _other_rule(rule: OtherRule) -> list[str]:
-    out = ["", "[[line]]"]
-    for remark in rule.remarks:
-        out += comment(remark)
-    out.append(f"kind = {plain(rule.kind)}")
-    if rule.name != rule.kind:
-        out.append(f"name = {plain(rule.name)}")
-    return out + rule.lines
-
-
-def _heard(draft: Draft, table: Table, roles: Roles, rule_name: str) -> list[str]:
-    names = dict(sorted(roles.names.items()))
-    where = {**{k: form for k, form in table.where.items()}, **roles.where}
-    for n, k in enumerate(k for k in where if k not in names):
-        names[k] = f"state_{n + 1}" if n else "state"
-    forms: dict[int, str] = {}
-    for k, name in names.items():
-        if k in where and isinstance(table.way, OrderWay):
-            forms[k] = where[k]
-        if name == "time" and roles.times.time_form not in ("unix_s", "unix_ms"):
-            forms[k] = _clock_pattern(roles.times.time_form)
-        if name == "date":
-            forms[k] = _clock_pattern(roles.times.date_form)
-    way = table.way
-    variants = way.rules(names) if isinstance(way, PairsWay) else [way.rule(names, forms)]
-    out: list[str] = []
-    for number, lines in enumerate(variants, 1):
-        out += ["", "[[line]]"]
-        if number == 1:
-            out += _remarks(draft, table, roles)
-        out.append('kind = "heard"')
-        if rule_name:
-            out.append(f"name = {plain(rule_name)}")
-        if number > 1:
-            out.append(f'name = "heard-{number}"  # the same with its parts in another order')
-        out += lines
-        if roles.times.time_form != ISO:
-            out.append(f"time_form = {plain(roles.times.time_form)}")
-        if "date" in names.values():
-            out.append(f"date_form = {plain(roles.times.date_form)}")
-        guards = {names[k]: text_of(form) for k, form in where.items()}
-        if (
-            "time" not in guards
-            and draft.others.left
-            and not lines[0].startswith("pattern")
-            and "time" in names.values()
-        ):
-            k = next(k for k, name in names.items() if name == "time")
-            if k in forms and not isinstance(way, JsonWay):
-                guards["time"] = text_of(forms[k])
-        if guards:
-            out.append(f"where = {inline(guards)}")
-    return out
-
-
-def _clock_pattern(form: str) -> str:
-    if form == ISO:
-        return _ISO_PATTERN
-    out = ""
-    for piece in re.split(r"(%[A-Za-z])", form):
-        if piece in _CLOCK_PATTERNS:
-            out += _CLOCK_PATTERNS[piece]
-        else:
-            out += _literal(piece).replace(" ", " +")
-    return out
-
-
-def _remarks(draft: Draft, table: Table, roles: Roles) -> list[str]:
-    out = []
-    example = draft.look.lines[table.rows[0]].text.strip()
-    shown = "".join(c if c.isprintable() else "?" for c in example)
-    out.append(f"# as: {shown[:100]}")
-    for k, column in enumerate(table.columns):
-        name = roles.names.get(k, "")
-        note = roles.notes.get(k, "")
-        if name:
-            unsure = any(d.essential and name.split("_")[0] in d.about for d in draft.doubts)
-            out += comment(
-                f"{column.label} is {name}"
-                + (f": {note}" if note else "")
-                + (" (NOT SURE, see above)" if unsure else "")
-            )
-        elif any(column.values):
-            out += comment(f"{column.label} is not read: {note or 'see above'} ({quoted(column.values, 2)})")
-    return out
-
-
 def _message(draft: Draft) -> list[str]:
     calls = draft.roles.calls
     if not calls.message:
@@ -345,6 +208,3 @@ def _message(draft: Draft) -> list[str]:
         out += [f"    {plain(pattern)}," for pattern in calls.patterns]
         out.append("]")
     return out
-
-
-__all__ = ["FILL_IN", "Draft", "has_date", "no_structure", "written"]

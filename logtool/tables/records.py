@@ -142,7 +142,7 @@ def _setups_beside(logs: Logs) -> list[str]:
             "receiver": setup.receiver,
             "dial_hz": str(setup.dial_hz),
             "locator": setup.locator,
-            "more": f"antenna={setup.antenna}",
+            "more": setup.more,
         }
         lines.append("\t".join(fields.get(name, "") for name in COLUMN_NAMES))
     return lines

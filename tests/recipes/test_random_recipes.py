@@ -10,6 +10,9 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
+from logtool.records.recipes.loading import recipe_of
+from logtool.records.recipes.trying import try_lines
+from logtool.records.sources import Source
 from tests.recipes.comparing import compare, compare_ledger, engine_lines, in_blocks_of
 from tests.recipes.making import made_recipe, made_text
 
@@ -45,3 +48,18 @@ def test_ledger_and_lines_set_aside(seed: int, tmp_path: Path) -> None:
     text, rules = made_recipe(rng)
     files = {f"{name}.txt": made_text(rng, rules, 50).encode() for name in "ab"}
     compare_ledger(tmp_path, text, files | {"c.txt": files["a.txt"]}, "2026-03-01")
+
+
+@pytest.mark.parametrize("seed", range(3))
+def test_trying_shows_what_reading_does(seed: int, tmp_path: Path) -> None:
+    rng = Random(f"try {seed}")
+    text, rules = made_recipe(rng)
+    data = made_text(rng, rules, 40)
+    whole, _ = engine_lines(text, data.encode())
+    path = tmp_path / "night.txt"
+    path.write_text(data)
+    tried = try_lines(recipe_of(text, "r.toml"), Source(str(path), path), 25)
+    assert [(one.rule, one.became, one.reason) for one in tried] == [
+        (line.rule, line.became, line.reason) for line in whole[:25]
+    ]
+    assert [(one.number, one.line) for one in tried] == list(enumerate(data.split("\n")[:25], 1))

@@ -1,4 +1,4 @@
-"""ADI files as lines of the layout: entries by tests/reference/adif.toml, foreign ones, broken and hostile ones."""
+"""ADI files as lines of the layout: entries of other programs, broken and hostile files."""
 
 from __future__ import annotations
 
@@ -7,28 +7,22 @@ import hashlib
 import io
 import resource
 import time
-from itertools import pairwise
 from pathlib import Path
 
 import pytest
-from hypothesis import given
-from hypothesis import strategies as st
 from pyproj import Geod
 
 from logtool import open_logs, receptions
 from logtool.errors import FileError
 from logtool.exports.formats import write_as
 from logtool.records.adi import scan_adi
-from logtool.records.adi_fields import ascii_more, ascii_text, more_of_ascii, text_of_ascii
-from logtool.records.adi_tags import MOST_FIELD_BYTES, AdiEntry, adi_entries
+from logtool.records.adi_tags import MOST_FIELD_BYTES
 from logtool.records.judge import Record, judge
 from logtool.records.scan import Scan, ScanOptions
 from logtool.records.sources import Source
 from logtool.tables.choice import choose
-from tests.places.sources import read
 from tests.records.slow_reader import COLUMNS
 
-ADIF = read("adif.toml")
 WHEN = "<QSO_DATE:8>20260301<TIME_ON:6>181015<FREQ:8>7.075500"
 ENTRY = f"<CALL:5>Q1ABC{WHEN}"
 
@@ -62,64 +56,6 @@ BARE = {
     "dial_hz": "7075500",
     "sender": "Q1ABC",
 }
-
-
-@pytest.mark.parametrize(("text", "calls"), ADIF["specifiers"])
-def test_data_specifiers(text: str, calls: list[str]) -> None:
-    for cut in range(len(text) + 1):
-        entries = list(adi_entries([text[:cut].encode(), text[cut:].encode()], {"CALL"}))
-        assert entries == [AdiEntry({"CALL": call}, whole=True) for call in calls]
-
-
-NAMES = st.sampled_from(["CALL", "call", "Mode", "NOTES", "APP_LOGTOOL_TEXT"])
-DATA = st.text(st.sampled_from("<>:EOR eorh5\u00fc\n"), max_size=12).map(str.encode)
-BETWEEN = st.text(st.sampled_from(" \r\n:>x5"), max_size=4).map(str.encode)
-
-
-@given(
-    st.lists(st.lists(st.tuples(NAMES, DATA, BETWEEN), max_size=4), max_size=4),
-    st.lists(st.integers(0, 400), max_size=6),
-)
-def test_lengths_count_whatever_the_data(
-    entries: list[list[tuple[str, bytes, bytes]]], cuts: list[int]
-) -> None:
-    text, wanted = b"", []
-    for fields in entries:
-        held: dict[str, str] = {}
-        for name, data, between in fields:
-            text += f"<{name}:{len(data)}>".encode() + data + between
-            if name.upper() != "NOTES":
-                held.setdefault(name.upper(), data.decode().replace("\n", "?"))
-        text += b"<eor>"
-        wanted.append(AdiEntry(held, whole=True))
-    bounds = sorted({0, len(text), *(cut for cut in cuts if cut < len(text))})
-    blocks = [text[a:b] for a, b in pairwise(bounds)]
-    assert list(adi_entries(blocks, {"CALL", "MODE", "APP_LOGTOOL_TEXT"})) == wanted
-
-
-LAYOUT_TEXT = st.lists(
-    st.sampled_from(["\\\\", "\\t", "\\n", "\\r"])
-    | st.characters(exclude_categories=["Cs", "Cc"], exclude_characters="\\")
-).map("".join)
-
-
-@given(LAYOUT_TEXT)
-def test_text_comes_back(text: str) -> None:
-    assert ascii_text(text).isascii()
-    assert text_of_ascii(ascii_text(text)) == text
-
-
-@given(st.text(st.characters(exclude_categories=["Cs", "Cc"])) | st.text("\\uU0a"))
-def test_more_comes_back(more: str) -> None:
-    assert ascii_more(more).isascii()
-    assert more_of_ascii(ascii_more(more)) == more
-
-
-@pytest.mark.parametrize(
-    "escape", ["\\u0009", "\\u000a", "\\u0041", "\\ud800", "\\U00110000", "\\Uffffffff", "\\u12"]
-)
-def test_escapes_that_are_none_stay(escape: str) -> None:
-    assert text_of_ascii(escape) == more_of_ascii(escape) == escape
 
 
 FOREIGN = [

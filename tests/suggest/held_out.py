@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import gzip
 import json
-from datetime import UTC, date, datetime, timedelta
+from datetime import UTC, datetime
 from zoneinfo import ZoneInfo
 
 from tests.suggest.scenario import make
@@ -30,7 +30,8 @@ def commas_in_text() -> Shape:
     for h in made.heard:
         more = made.draw.choice(["", "", ", tnx", ", 73, gn"])
         out.heard(
-            f"{h.time:%Y-%m-%d %H:%M:%S},{h.mode},{h.snr_db},{h.audio_hz},{h.dial_hz / 1000:.2f},{h.late_s},{h.text}{more}",
+            f"{h.time:%Y-%m-%d %H:%M:%S},{h.mode},{h.snr_db},{h.audio_hz},{h.dial_hz / 1000:.2f},{h.late_s},"
+            f"{h.text}{more}",
             h,
         )
     return out.shape("commas-in-text", "commas.txt")
@@ -41,7 +42,7 @@ def short_years() -> Shape:
     made, out = make(23, count=900, start=datetime(2026, 3, 3, 22, 0, tzinfo=UTC), share=0.1), Lines()
     for h in made.heard:
         out.heard(
-            f"{h.time:%d/%m/%y}|{h.time:%H:%M:%S}|{h.dial_hz / 1000:.1f}|{h.audio_hz}|{h.snr_db}|{h.late_s}|{h.text}", h,
+            f"{h.time:%d/%m/%y|%H:%M:%S}|{h.dial_hz / 1000:.1f}|{h.audio_hz}|{h.snr_db}|{h.late_s}|{h.text}", h,
             mode=None,
         )  # fmt: skip
     return out.shape("short-years", "bars.log")
@@ -117,7 +118,8 @@ def both_ways() -> Shape:
     for i, h in enumerate(made.heard):
         if i % 9 == 4:
             out.add(
-                f"{h.time:%y%m%d %H%M%S} TX {h.mode} {h.dial_hz} {made.draw.randrange(300, 2500)} 0 0.0 Q1SHY Q0HUT R-05"
+                f"{h.time:%y%m%d %H%M%S} TX {h.mode} {h.dial_hz} {made.draw.randrange(300, 2500)}"
+                " 0 0.0 Q1SHY Q0HUT R-05"
             )
         out.heard(
             f"{h.time:%y%m%d %H%M%S} RX {h.mode} {h.dial_hz} {h.audio_hz} {h.snr_db} {h.late_s} {h.text}", h
@@ -151,4 +153,3 @@ HELD_OUT = (
     both_ways,
     caller_first,
 )
-__all__ = ["HELD_OUT", "date", "timedelta"]

@@ -6,7 +6,7 @@ import json
 import random
 from collections.abc import Callable
 from dataclasses import dataclass, field
-from datetime import UTC, date, datetime, timedelta
+from datetime import UTC, datetime, timedelta
 from zoneinfo import ZoneInfo
 
 from tests.suggest.scenario import Heard, make
@@ -241,8 +241,10 @@ def _join(plan: Plan, cells: list[str]) -> str:
 def _line(plan: Plan, cells: dict[str, str]) -> str:
     if plan.way == "json":
         numbers = ("snr", "late", "audio", "counter", "quality")
-        told = {plan.names[name]: (float(cell) if "." in cell else int(cell)) if name in numbers and cell else cell or None
-                for name, cell in cells.items()}  # fmt: skip
+        told: dict[str, object] = {plan.names[name]: cell or None for name, cell in cells.items()}
+        for name in numbers:
+            if cells.get(name):
+                told[plan.names[name]] = float(cells[name]) if "." in cells[name] else int(cells[name])
         return json.dumps(told)
     if plan.way == "pairs":
         items = [
@@ -253,4 +255,3 @@ def _line(plan: Plan, cells: dict[str, str]) -> str:
 
 
 DAY = timedelta(days=1)
-__all__ = ["date", "plan_of", "shape_of"]

@@ -7,9 +7,10 @@ from datetime import datetime
 
 import pytest
 
+from logtool.suggest.day_order import best_form, date_in_name, name_date_of
 from logtool.suggest.tables import Column
 from logtool.suggest.timeforms import forms_of, moment_of
-from logtool.suggest.times import best_form, date_in_name, find_times, name_date_of
+from logtool.suggest.times import find_times
 
 DMY, MDY = "%d/%m/%Y %H:%M", "%m/%d/%Y %H:%M"
 

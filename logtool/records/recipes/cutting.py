@@ -36,7 +36,7 @@ def targets_of(recipe: Recipe) -> list[str]:
 
 
 def parsed_sql(recipe: Recipe, headers: dict[int, list[str]], header_line: str | None) -> str:
-    """Return SQL of a relation of i, rule, stamp_us, lacking, day_us and the targets, from the relation `block`.
+    """Return SQL of a relation of i, rule, stamp_us, lacking, day_us, lost_date and the targets, of `block`.
 
     Parameters
     ----------
@@ -65,12 +65,14 @@ def parsed_sql(recipe: Recipe, headers: dict[int, list[str]], header_line: str |
     ]
     relation = f"SELECT {', '.join(['i', f'coalesce(rule, {NONE}) AS rule', *pieces])} FROM ({relation})"
     times = [_time_of(k, rule) for k, rule in enumerate(recipe.rules)]
+    lost_date = _by_rule([_lost_date(k, rule) for k, rule in enumerate(recipe.rules)], "BOOLEAN")
     columns = [
         "i",
         "rule",
         f"{_by_rule([time for time, _ in times], 'BIGINT')} AS stamp_us",
         f"{_by_rule([lacking for _, lacking in times], 'INTEGER')} AS lacking",
         f"{_by_rule([_day_of(k, rule) for k, rule in enumerate(recipe.rules)], 'BIGINT')} AS day_us",
+        f"coalesce({lost_date}, false) AS lost_date",
     ]
     for target in targets_of(recipe):
         values = [_value_of(target, k, rule, recipe) for k, rule in enumerate(recipe.rules)]
@@ -170,13 +172,21 @@ def _by_rule(values: list[str | None], kind: str) -> str:
 def _time_of(k: int, rule: Rule) -> tuple[str | None, str | None]:
     if "time" not in rule.pieces or not rule.is_record:
         return None, None
-    return time_sql(_cleaned(k, "time"), rule.time_form)
+    time, lacking = time_sql(_cleaned(k, "time"), rule.time_form)
+    lost = _lost_date(k, rule)
+    return (f"CASE WHEN NOT coalesce({lost}, false) THEN {time} END" if lost else time), lacking
 
 
 def _day_of(k: int, rule: Rule) -> str | None:
     if "date" not in rule.pieces or rule.date_form is None or rule.kind == SKIP:
         return None
     return date_sql(_cleaned(k, "date"), rule.date_form)
+
+
+def _lost_date(k: int, rule: Rule) -> str | None:
+    """Return the condition that a line has a date which cannot be read."""
+    day_us = _day_of(k, rule)
+    return None if day_us is None else f"{_cleaned(k, 'date')} IS NOT NULL AND {day_us} IS NULL"
 
 
 def _value_of(target: str, k: int, rule: Rule, recipe: Recipe) -> str | None:

@@ -42,15 +42,8 @@ _RULE_NAME = r"[a-z][a-z0-9-]{0,31}"
 _OF_LEDGER = (HEADER_RULE, NO_RULE, BAD_ENCODING)  # what the ledger calls lines that are of no rule
 _OF_LINES = ("time", "date", "text", "locator")  # what only a line can say
 _MOST_KIB = 1024
-_IN_USE = (
-    "i",
-    "rule",
-    "stamp_us",
-    "lacking",
-    "day_us",
-    "time_us",
-    "whole_name",
-)  # columns of the engine's tables
+# Columns of the engine's tables, which a kept name would hide.
+_IN_USE = frozenset(["i", "rule", "stamp_us", "lacking", "day_us", "lost_date", "time_us", "whole_name"])
 
 
 def load_recipe(path: str | os.PathLike[str]) -> Recipe:
@@ -99,8 +92,6 @@ def recipe_of(text: str, name: str) -> Recipe:
     named = top.table("name")
     name_pattern = named.pattern("pattern")
     name_pieces = () if name_pattern is None else tuple(name for name in groups_of(name_pattern) if name)
-    if "name" in top and not name_pieces:
-        raise named.error("pattern", "it needs a pattern with a named group, like (?P<receiver>...)")
     _check_names(named, "pattern", name_pieces, keep)
     for word in {*name_pieces} & {*_OF_LINES} - {"date"}:
         raise named.error("pattern", f"{word!r} cannot come from a file's name: it belongs to a line")
@@ -128,6 +119,8 @@ def recipe_of(text: str, name: str) -> Recipe:
     )
     for fields in (top, named, *([message] if message else [])):
         fields.finish()
+    if "name" in top and not name_pieces:
+        raise named.error("pattern", "it needs a pattern with a named group, like (?P<receiver>...)")
     _check_whole(top, recipe)
     return recipe
 

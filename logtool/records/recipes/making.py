@@ -99,7 +99,7 @@ def made_sql(recipe: Recipe, own: list[str], constants: dict[str, str], *, has_s
                 cases.append((k, value))
         given += [target] if cases else []
         values.append(f"{_by_rule(cases)} AS {column(target)}")
-    source = f"SELECT parsed.i, rule, stamp_us, time_us, {', '.join(values)} FROM parsed {' '.join(joins)}"
+    source = f"SELECT parsed.i, rule, stamp_us, lost_date, time_us, {', '.join(values)} FROM parsed {' '.join(joins)}"
     if "signal_hz" in given:
         source = _from_signal(source)
         given += ["dial_hz", "audio_hz"]
@@ -198,7 +198,8 @@ def _out(recipe: Recipe, given: list[str]) -> str:
     line = f"concat_ws(chr(9), {', '.join(fields)}, {more})"
     passed_over = [k for k, rule in enumerate(recipe.rules) if not rule.is_record]
     nothing = ", ".join(map(str, [*passed_over, SKIPPED, HEADER]))
-    return f"""CASE WHEN rule IN ({nothing}) THEN {sql_text(PASSED_OVER)}
+    return f"""CASE WHEN lost_date THEN {sql_text(MARK + BAD_TIME)}
+        WHEN rule IN ({nothing}) THEN {sql_text(PASSED_OVER)}
         WHEN rule = {BLANK} THEN ''
         WHEN rule = {NONE} THEN {sql_text(MARK + NO_RULE)}
         WHEN rule = {ENCODING} THEN {sql_text(MARK + BAD_ENCODING)}

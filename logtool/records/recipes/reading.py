@@ -178,7 +178,7 @@ class _Stranger:
 
     def look(self, block: bytes, made: bytes) -> None:
         """Look at lines and what was made of them."""
-        raw_lines = block.split(b"\n", STRANGER_LINES)
+        raw_lines = block.removesuffix(b"\n").split(b"\n", STRANGER_LINES)
         for raw, line in zip(raw_lines, made.split(b"\n", STRANGER_LINES)[:STRANGER_LINES], strict=False):
             self.lines += 1
             if not line or line.startswith(b"#"):

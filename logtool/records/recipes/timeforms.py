@@ -13,13 +13,13 @@ DIRECTIVES = {
 }  # fmt: skip
 ISO, UNIX_S, UNIX_MS = "iso", "unix_s", "unix_ms"
 WORD_FORMS = {UNIX_S: 1_000_000, UNIX_MS: 1_000}  # to microseconds
-ABSOLUTE, LOCAL, YEARLESS, OF_DAY = (
-    0,
-    1,
-    2,
-    3,
+ABSOLUTE, LOCAL, YEARLESS, OF_DAY = range(
+    4
 )  # what a time lacks: nothing, its zone, its year too, its date too
-_ISO = r"[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{2}:[0-9]{2}(:[0-9]{2}([.,][0-9]{1,6})?)?(Z|[+-][0-9]{2}(:?[0-9]{2})?)?"
+_ISO = (
+    r"[0-9]{4}-[0-9]{2}-[0-9]{2}[T ]([01][0-9]|2[0-3]):[0-9]{2}(:[0-9]{2}([.,][0-9]{1,6})?)?"
+    r"(Z|[+-][0-9]{2}(:?[0-9]{2})?)?"
+)
 _ISO_DATE = "%Y-%m-%d"
 _LEAP_YEAR = "2000"  # stands in for a year that is not written, so that 29 February can be read
 _FRACTION_DIGITS = 6
