@@ -62,6 +62,7 @@ def command(**words: Any) -> int:
     off.
     """
     from logtool.cli.trying import run_suggest, run_try
+    from logtool.pages.map_privacy import private_choice
     from logtool.tables.chosen import unknown_words
 
     if words["suggest"] and words["try_"]:
@@ -79,6 +80,9 @@ def command(**words: Any) -> int:
         )
     choice = choice_of(words)
     with opened(words, with_digest=False) as logs:
+        choice = private_choice(choice, logs.privacy)
+        if not any(file.records for file in logs.inputs):  # nothing is written in place of what may be there
+            return status_of(logs, quiet=words["quiet"], notes=[])
         with _output(words["out"]) as out:
             notes = write_as(name, logs, choice, out)
         notes = [*unknown_words(logs.connection, choice, logs.privacy), *notes]

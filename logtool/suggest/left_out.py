@@ -82,6 +82,8 @@ def _could_be(roles: Roles, column: Column, spread: Spread | None) -> list[str]:
         and not (always and column.values[0].islower())
     ):
         could.append("mode")
+    elif column.kind == "other" and not always and any(c.isdigit() for value in column.values for c in value):
+        could += ["snr_db", "late_s", "audio_hz", "dial_hz"]
     elif column.kind == "text":
         could += ["sender", "addressee"]
     if "sender" in could and roles.calls.message:

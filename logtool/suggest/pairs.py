@@ -15,6 +15,8 @@ from logtool.suggest.toml import escaped, text_of
 FEWEST_KEYS = 3
 _LEAST_SHARE = 0.3
 MOST_ORDERS = 8
+_ORDER_SHARE = 0.01  # of the lines have their keys in an order
+_MANY_ROWS = 30
 _PAIR = {
     "=": re.compile(r"(?<![\w.])([A-Za-z][\w./-]{0,24}) ?= ?(?=\S)"),
     ":": re.compile(r"(?<![\w.])([A-Za-z][\w./-]{0,24}): ?(?=\S)"),
@@ -78,13 +80,15 @@ def pairs_table(lines: list[str], sign: str) -> Table | None:
     rows = [i for i in range(len(lines)) if len({match[1] for match in found[i]} & common) >= len(common) / 2]
     values = {key: [""] * len(rows) for key in keys}
     orders: Counter[tuple[str, ...]] = Counter()
+    row_orders: list[tuple[str, ...]] = []
     leads = []
     for j, i in enumerate(rows):
         ends = [*(match.start() for match in found[i][1:]), len(lines[i])]
         for match, end in zip(found[i], ends, strict=True):
             if match[1] in values:
                 values[match[1]][j] = lines[i][match.end() : end].strip(_STRIPPED).strip('"')
-        orders[tuple(dict.fromkeys(match[1] for match in found[i] if match[1] in values))] += 1
+        row_orders.append(tuple(dict.fromkeys(match[1] for match in found[i] if match[1] in values)))
+        orders[row_orders[-1]] += 1
         leads.append(cores_of(lines[i][: found[i][0].start()]))
     counts = Counter(len(cores) for cores, _ in leads)
     lead = counts.most_common(1)[0][0]
@@ -99,6 +103,11 @@ def pairs_table(lines: list[str], sign: str) -> Table | None:
         )
     lead_glue.append(Counter(end for cores, end in leads if len(cores) == lead).most_common(1)[0][0])
     columns += [Column(repr(key), values[key], key) for key in keys]
+    least = max(2, _ORDER_SHARE * len(rows)) if len(rows) >= _MANY_ROWS else 1
+    orders = Counter(
+        {order: n for order, n in orders.items() if n >= least}
+    )  # the others are cut off or damaged
+    wanted = [keep and order in orders for keep, order in zip(wanted, row_orders, strict=True)]
     merged = _merged(list(orders))
     blanks = frozenset(key for key in keys if any(" " in value for value in values[key]))
     optional = frozenset(key for key in keys if any(key not in order for order in orders))

@@ -27,6 +27,7 @@ from logtool.suggest.values import given, quoted
 _BARE = re.compile(r"[0-9.]+")
 _FALLS_SHARE = 0.05
 _HALF_DAY = timedelta(hours=12)
+_HALVES = {"AM", "PM", "A.M.", "P.M."}
 _UTC_WORDS = {"utc", "gmt", "z"}
 
 
@@ -76,7 +77,7 @@ def find_times(columns: list[Column], parts: list[int], name_date: datetime | No
     full, clocks, dates = _candidates(columns, parts)
     if full:
         chosen = min(full, key=lambda one: one.rank)
-        others = [one for one in full if one.column != chosen.column and one.rank[:1] == chosen.rank[:1]]
+        others = [one for one in full if one.column != chosen.column and one.rank[:2] == chosen.rank[:2]]
         if others:
             labels = ", ".join(columns[one.column].label for one in others)
             found.doubts.append(
@@ -88,7 +89,7 @@ def find_times(columns: list[Column], parts: list[int], name_date: datetime | No
         _settle_full(found, columns[chosen.column], chosen, parts, name_date)
     elif clocks:
         chosen = min(clocks, key=lambda one: one.rank)
-        others = [one for one in clocks if one.column != chosen.column and one.rank[:2] == chosen.rank[:2]]
+        others = [one for one in clocks if one.column != chosen.column and one.rank[:3] == chosen.rank[:3]]
         if others:
             labels = ", ".join(columns[one.column].label for one in others)
             found.doubts.append(
@@ -106,6 +107,14 @@ def find_times(columns: list[Column], parts: list[int], name_date: datetime | No
             _settle_date(found, columns, min(dates, key=lambda one: one.rank), parts, name_date)
         _doubt_twelve_hours(found, parts)
     if found.time is not None:
+        for column in columns:
+            if {value.upper() for value in given(column.values)} & _HALVES and "%H" in found.time_form:
+                found.doubts.append(
+                    Doubt(
+                        "time",
+                        f"{column.label} says AM or PM, which is not read: half of the times are wrong",
+                    )
+                )
         column = columns[found.time]
         found.zone_known = names_utc(found.time_form, given(column.values)) or bool(
             set(words_of(column.hint)) & _UTC_WORDS
@@ -128,10 +137,11 @@ def _candidates(
         bare = all(_BARE.fullmatch(value) for value in set(values))
         whole = tuple(form for form in forms if has_date(form) and has_time(form))
         if whole and (not bare or unnamed < 2):
-            full.append(_Candidate(k, whole, (unnamed, k)))
+            full.append(_Candidate(k, whole, (unnamed, not _UTC_WORDS & set(words_of(column.hint)), k)))
         of_day = tuple(form for form in forms if has_time(form) and not has_date(form))
         if of_day and (not bare or (unnamed < 2 and _runs(column.values, of_day[0], parts))):
-            clocks.append(_Candidate(k, of_day, (unnamed, int(bare), k)))
+            utc = bool(_UTC_WORDS & set(words_of(column.hint)))
+            clocks.append(_Candidate(k, of_day, (unnamed, int(bare), not utc, k)))
         days = tuple(form for form in forms if has_date(form) and not has_time(form))
         if days and (not bare or (unnamed < 2 and _holds(column.values))):
             dates.append(_Candidate(k, days, (unnamed, int(bare), k)))

@@ -90,7 +90,15 @@ def _settle(draft: Draft) -> None:
         doubts.append(
             Doubt(
                 "date",
-                f"the text does not tell the {what}; give --date YYYY-MM-DD, the day of the file's first line",
+                f"the text does not tell the {what}; give --date YYYY-MM-DD, the day of the file's first line; a day without any line cannot be seen",
+                essential=False,
+            )
+        )
+    if draft.name_date and "date" not in draft.others.carried:
+        doubts.append(
+            Doubt(
+                "date",
+                f"the day of the first line is taken to be that in the file's name, {draft.name_date[0]}",
                 essential=False,
             )
         )

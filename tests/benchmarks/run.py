@@ -15,6 +15,7 @@ import time
 from dataclasses import dataclass
 from pathlib import Path
 
+from tests.benchmarks.make_foreign import make_foreign
 from tests.benchmarks.make_log import make_log
 
 FOLDER = Path("bench")
@@ -85,6 +86,19 @@ def agree(log: Path) -> None:
     print(f"both peers give the {len(ours['rows'])} rows of reach", flush=True)
 
 
+def read_alike(log: Path, text: Path, recipe: Path) -> None:
+    """Stop unless a text by its recipe gives the rows that the same records in the layout give."""
+    commands = [[str(log)], ["--recipe", str(recipe), str(text)]]
+    rows = [
+        json.loads(
+            subprocess.run([*LOGTOOL, "reach", "--json", *words], capture_output=True, check=True).stdout
+        )["rows"]
+        for words in commands
+    ]
+    if rows[0] != rows[1]:
+        raise SystemExit("the text by its recipe gives other rows than the log: they are not the same records")
+
+
 def main() -> None:
     """Make the logs that are missing and measure."""
     FOLDER.mkdir(exist_ok=True)
@@ -93,7 +107,13 @@ def main() -> None:
         if not (FOLDER / f"{name}.log").exists():
             make_log(lines, FOLDER / f"{name}.log", bad_share)
     week, many, dirty = (FOLDER / f"{name}.log" for name in logs)
+    texts = {log: FOLDER / f"{log.stem}-foreign.txt" for log in (week, many)}
+    recipe = FOLDER / "foreign.toml"
+    for log, text in texts.items():
+        if not text.exists():
+            make_foreign(log, text, recipe)
     agree(week)
+    read_alike(week, texts[week], recipe)
     for name in ("--help", "reach", "senders", "sectors", "nights", "map"):
         where = ["--out", str(FOLDER / "map.html")] if name == "map" else []
         command = [*LOGTOOL, name, *where, *([str(week)] if name[0] != "-" else [])]
@@ -102,6 +122,9 @@ def main() -> None:
     reach = [*LOGTOOL, "reach", "--json"]
     for name, command in PEERS.items():
         pair("logtool reach, ten million lines", [*reach, str(many)], f"bare {name}", [*command, str(many)])
+    for log in (week, many):
+        by_recipe = [*reach, "--recipe", str(recipe), str(texts[log])]
+        pair(f"logtool reach, {log.stem} by a recipe", by_recipe, "the same in the layout", [*reach, str(log)])
     pair("logtool reach, 1 % bad lines", [*reach, str(dirty)], "logtool reach, clean", [*reach, str(many)])
 
 

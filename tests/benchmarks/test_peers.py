@@ -15,6 +15,7 @@ import pytest
 from logtool.records.opening import open_logs
 from logtool.tables.choice import choose
 from logtool.tables.reach import reach_table
+from tests.benchmarks.make_foreign import make_foreign
 from tests.benchmarks.make_log import make_log
 from tests.cli.calling import ROOT
 
@@ -44,3 +45,12 @@ def test_a_bare_script_gives_the_same_rows(peer: str, log: Path) -> None:
     assert len(theirs) == 24
     assert sum(row["receptions"] for row in theirs) == LINES
     assert theirs == [{name: row[name] for name in theirs[0]} for row in ours]
+
+
+def test_the_same_records_by_a_recipe_give_the_same_rows(log: Path, tmp_path: Path) -> None:
+    text, recipe = tmp_path / "day.txt", tmp_path / "day.toml"
+    make_foreign(log, text, recipe)
+    with open_logs(log) as logs, open_logs(text, recipe=recipe) as foreign:
+        wanted, found = (list(reach_table(one, choose()).rows()) for one in (logs, foreign))
+        assert foreign.inputs[0].rules == {"carry": 1, "heard": LINES}
+    assert found == wanted

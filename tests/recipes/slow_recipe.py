@@ -126,14 +126,18 @@ class SlowRecipe:
     def _of_rule(self, number: int, rule: dict[str, Any], pieces: dict[str, Any]) -> Line:
         name, kind = rule.get("name", rule["kind"]), rule["kind"]
         own = self._own(rule, pieces)
+        is_lost = False
         if kind != "skip" and "date" in pieces:
             text = cleaned(pieces["date"], "date", self.recipe)
             day = None if text is None else written_date(text, rule["date_form"])
+            is_lost = text is not None and day is None
             if day is not None:
                 self.clock.give_date(day)
         for piece in rule.get("carry", pieces_of(rule) if kind == "carry" else []):
             if own.get(target(piece)) is not None:
                 self._carried[target(piece)] = own[target(piece)]
+        if is_lost:
+            return Line(number, name, reason="bad-time")
         if kind in ("carry", "skip"):
             return Line(number, name)
         written = self._time(rule, pieces)

@@ -71,7 +71,13 @@ def test_a_date_comes_from_its_own_line() -> None:
     text = recipe(heard("%H:%M", ["date", "time"], date_form="%d.%m.%Y"))
     lines = ["01.03.2026,23:59", "02.03.2026,00:00", "01.03.2026,12:00", ",11:59", "30.02.2026,12:30"]
     wanted = ["2026-03-01T23:59:00Z", "2026-03-02T00:00:00Z", "2026-03-01T12:00:00Z", "2026-03-01T11:59:00Z"]
-    assert times_of(text, lines)[:4] == wanted
+    assert times_of(text, lines) == [*wanted, "bad-time"]
+
+
+def test_a_date_that_cannot_be_read_is_told() -> None:
+    text = recipe(CARRIED + heard("%H:%M"))
+    found = compare(text, "== 2026-03-01\n18:00,Q1A\n== 2026-02-30\n18:05,Q1A\n")
+    assert [line.reason for line in found] == ["", "", "bad-time", ""]
 
 
 def test_a_date_comes_from_a_carry_line_and_none_before_it() -> None:
