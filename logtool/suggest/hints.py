@@ -23,12 +23,12 @@ _WORDS = {
     "receiver": "receiver rx listener",
     "antenna": "antenna ant",
     "late_or_audio": "offset off",
-    "signal": "signal sig",
+    "signal": "signal sig level strength",
     "report": "report rprt rst",
     "drift": "drift",
     "dbfs": "dbfs",
     "other": "temp temperature km distance dist bearing azimuth az count nr no id number index seq quality score"
-    " sure confidence volt volts age band speed width bandwidth lat lon latitude longitude level strength rms peak"
+    " sure confidence volt volts age band speed width bandwidth lat lon latitude longitude rms peak"
     " duration length cycles errors err bits phase status state channel ch s2n prob",
 }
 _MEANS = {word: name for name, words in _WORDS.items() for word in words.split()}

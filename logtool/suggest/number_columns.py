@@ -26,6 +26,7 @@ from logtool.suggest.values import (
 if TYPE_CHECKING:
     from logtool.suggest.roles import Roles
 
+_CLEARLY_WIDER = 2.5  # times; our choice
 _VARYING_SENDERS = 2
 
 
@@ -135,6 +136,10 @@ def name_by_values(roles: Roles, columns: list[Column], spreads: dict[int, Sprea
         _take(roles, columns, spreads, late, "late_s")
 
 
+def _width(spread: Spread) -> float:
+    return spread.p95 - spread.p5
+
+
 def _take(
     roles: Roles, columns: list[Column], spreads: dict[int, Spread], candidates: list[int], name: str
 ) -> None:
@@ -142,6 +147,17 @@ def _take(
     kept = negative or candidates
     if not kept:
         return
+    wide = sorted(kept, key=lambda k: -_width(spreads[k]))
+    if (
+        name == "snr_db"
+        and len(wide) > 1
+        and _width(spreads[wide[0]]) >= _CLEARLY_WIDER * _width(spreads[wide[1]])
+    ):
+        first, other = columns[wide[0]].label, columns[wide[1]].label
+        roles.doubts.append(
+            Doubt(name, f"NOT SURE: {first} is taken because it spreads most; {other} could be it")
+        )
+        kept = wide[:1]
     k = kept[0]
     spread = spreads[k]
     if len(kept) > 1:

@@ -90,7 +90,8 @@ def _settle(draft: Draft) -> None:
         doubts.append(
             Doubt(
                 "date",
-                f"the text does not tell the {what}; give --date YYYY-MM-DD, the day of the file's first line; a day without any line cannot be seen",
+                f"the text does not tell the {what}; give --date YYYY-MM-DD, the day of the file's first line; a day"
+                " without any line cannot be seen",
                 essential=False,
             )
         )

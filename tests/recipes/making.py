@@ -72,7 +72,7 @@ FOR_KIND = {
     "carry": ["dial_khz", "dial_hz", "mode", "receiver", "decoder", "place", "antenna", "locator", "signal_khz"],
     "skip": ["text"],
 }  # fmt: skip
-NEEDS = {"watch": "on_s", "noise": "dbfs"}
+NEEDS = {"watch": ["on_s"], "noise": ["dbfs"], "setup": ["place", "antenna"]}
 WAYS = [",", ";", "\t", "|", ".", "space", "fixed", "json", "pattern"]
 WIDTH = 22
 PATTERNS = ["CQ {sender} [{locator}]", "{addressee} {sender} [{locator}] {power_dbm} ...", "de {sender} ..."]
@@ -152,8 +152,9 @@ def written(at: datetime, form: str) -> str:
 def made_kind(rng: Random, kind: str, tag: str) -> Kind:
     """Return a rule of a kind with pieces and forms at random."""
     pieces = rng.sample(FOR_KIND[kind], min(len(FOR_KIND[kind]), rng.randint(1, 7)))
-    if kind in NEEDS and not any(piece.startswith(NEEDS[kind][:3]) for piece in pieces):
-        pieces.append(NEEDS[kind])
+    for needed in NEEDS.get(kind, []):
+        if not any(piece.startswith(needed[:3]) for piece in pieces):
+            pieces.append(needed)
     if kind not in ("carry", "skip"):
         pieces.insert(rng.randint(0, len(pieces)), "time")
     if kind != "skip" and rng.random() < 0.3:

@@ -13,12 +13,13 @@ from logtool.records.recipes.recipe import RecipeError
 from logtool.suggest import suggest
 from tests.suggest.comparing import Outcome, filled_in, outcome_of
 from tests.suggest.held_out import HELD_OUT
+from tests.suggest.later import LATER
 from tests.suggest.shape import Shape
 from tests.suggest.shapes import DEVELOPED, binary, carried, name_dated, no_log, status
 
-SHAPES = (*DEVELOPED, *HELD_OUT)
+SHAPES = (*DEVELOPED, *HELD_OUT, *LATER)
 # Read right once the recipe's blanks are filled in; the others are told to be in doubt.
-NOT_RIGHT = {"commas_in_text"}
+NOT_RIGHT = {"commas_in_text", "halves_apart"}
 NO_LOGS = (no_log, binary)
 _known: dict[str, Outcome] = {}
 

@@ -3,31 +3,28 @@
 from __future__ import annotations
 
 import codecs
-import difflib
 import os
 import re
 import tomllib
 from pathlib import Path
 
 from logtool.errors import FileError
-from logtool.records.layout import KEY_FORM, KINDS, NUMBER_FORM
+from logtool.records.layout import KEY_FORM, KINDS
 from logtool.records.recipes.fields import Fields
-from logtool.records.recipes.names import NUMBER_TARGETS, PIECES, target_of
+from logtool.records.recipes.forming import form_of
+from logtool.records.recipes.names import PIECES, target_of
+from logtool.records.recipes.naming import check_clean, check_names, constants_of
 from logtool.records.recipes.patterns import groups_of, template_pattern
 from logtool.records.recipes.recipe import (
     BAD_ENCODING,
     CARRY,
     HEADER_RULE,
-    MORE_COLUMNS,
     NO_RULE,
     RECIPE_VERSION,
     SKIP,
-    SPACE,
-    Form,
     Recipe,
     Rule,
 )
-from logtool.records.recipes.values import constant_value
 
 DEFAULT_MESSAGES = (  # common practice, no source: the station called first, the caller second
     "CQ|QRZ [{word}] [DE] {sender} [{locator}] ...",
@@ -40,7 +37,6 @@ NEVER_LOCATORS = ("RR73",)
 _FORMS = ("pattern", "separator", "fixed", "json")
 _RULE_NAME = r"[a-z][a-z0-9-]{0,31}"
 _OF_LEDGER = (HEADER_RULE, NO_RULE, BAD_ENCODING)  # what the ledger calls lines that are of no rule
-_OF_LINES = ("time", "date", "text", "locator")  # what only a line can say
 _MOST_KIB = 1024
 # Columns of the engine's tables, which a kept name would hide.
 _IN_USE = frozenset(["i", "rule", "stamp_us", "lacking", "day_us", "lost_date", "time_us", "whole_name"])
@@ -92,7 +88,7 @@ def recipe_of(text: str, name: str) -> Recipe:
     named = top.table("name")
     name_pattern = named.pattern("pattern")
     name_pieces = () if name_pattern is None else tuple(name for name in groups_of(name_pattern) if name)
-    _check_names(named, "pattern", name_pieces, keep)
+    check_names(named, "pattern", name_pieces, keep)
     for word in {*name_pieces} & {*_OF_LINES} - {"date"}:
         raise named.error("pattern", f"{word!r} cannot come from a file's name: it belongs to a line")
     message = top.table("message") if "message" in top else None
@@ -110,7 +106,7 @@ def recipe_of(text: str, name: str) -> Recipe:
         empty=top.words("empty"),
         skip=top.patterns("skip"),
         keep=keep,
-        constants=_constants(top.table("constants"), keep),
+        constants=constants_of(top.table("constants"), keep),
         name_pattern=name_pattern,
         name_date_form=named.date_form("date_form"),
         values=_values(top, {*name_pieces, *(piece for rule in rules for piece in rule.pieces)}),
@@ -176,7 +172,7 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
         raise fields.error(
             "kind", f"it needs one of {', '.join(_FORMS)}; it has {' and '.join(given) or 'none'}"
         )
-    form, pieces = _form(fields, given[0])
+    form, pieces = form_of(fields, given[0])
     naming = "columns" if given[0] == "separator" else given[0]  # the key that names the pieces
     twice = sorted({piece for piece in pieces if pieces.count(piece) > 1})
     if twice:
@@ -190,7 +186,7 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
         if piece not in pieces:
             raise fields.error("where", f"{piece!r} is no piece of this line; it has {', '.join(pieces)}")
     wanted = tuple(piece for piece in pieces if piece not in where or piece in PIECES or piece in keep)
-    _check_names(fields, naming, wanted, keep)
+    check_names(fields, naming, wanted, keep)
     carry = fields.words("carry", wanted if kind == CARRY else ())
     for piece in carry:
         if piece not in wanted:
@@ -207,101 +203,8 @@ def _rule(fields: Fields, keep: tuple[str, ...]) -> Rule:
         )
     if kind not in (CARRY, SKIP) and "time" not in wanted:
         raise fields.error(naming, f"a line of the kind `{kind}` needs a piece `time`")
-    constants = _constants(fields.table("constants"), keep)
+    constants = constants_of(fields.table("constants"), keep)
     return Rule(name, kind, form, wanted, where, time_form, date_form, carry, constants)
-
-
-def _form(fields: Fields, way: str) -> tuple[Form, tuple[str, ...]]:
-    if way == "pattern":
-        pattern = fields.pattern("pattern")
-        assert pattern is not None
-        return Form(pattern=pattern), tuple(name for name in groups_of(pattern) if name)
-    if way == "fixed":
-        return _fixed(fields)
-    if way == "json":
-        paths = fields.strings("json")
-        if not paths:
-            raise fields.error("json", "it names no piece")
-        for path in paths.values():
-            if '"' in path or not all(path.split(".")):
-                raise fields.error("json", f"{path!r}: names with dots between them, none empty, no quotes")
-        return Form(json={name: tuple(path.split(".")) for name, path in paths.items()}), tuple(paths)
-    separator = fields.take("separator", str)
-    if separator != SPACE and len(separator) != 1:
-        raise fields.error("separator", f"{separator!r}: one character, or {SPACE!r} for runs of blanks")
-    if separator in ('"', " ") or not (separator.isprintable() or separator == "\t"):
-        raise fields.error("separator", f"{separator!r} cannot separate columns; write {SPACE!r} for blanks")
-    if fields.take("header", bool, False):
-        if separator == SPACE:
-            raise fields.error(
-                "header", "with blanks as separators the columns have to be named in `columns`"
-            )
-        header = fields.strings("columns")
-        if not header:
-            raise fields.error("columns", 'with header = true it is a table, like { time = "UTC" }')
-        if len(set(header.values())) < len(header):
-            raise fields.error("columns", "it gives one column two names; give it one")
-        return Form(separator=separator, header=header), tuple(header)
-    columns = fields.words("columns")
-    more = columns[-1:] == (MORE_COLUMNS,)
-    columns = columns[:-1] if more else columns
-    if not any(columns):
-        raise fields.error("columns", 'name the columns in order, like ["time", "snr_db", "", "text"]')
-    pieces = tuple(name for name in columns if name)
-    return Form(separator=separator, columns=columns, more_columns=more), pieces
-
-
-def _fixed(fields: Fields) -> tuple[Form, tuple[str, ...]]:
-    fixed: dict[str, tuple[int, int | None]] = {}
-    for name, span in fields.take("fixed", dict).items():
-        whole = isinstance(span, list) and len(span) in (1, 2) and all(type(end) is int for end in span)
-        if not whole or span[0] < 1 or span[-1] < span[0]:
-            raise fields.error("fixed", f"{name}: first and last character, from 1, like [1, 6]; not {span}")
-        fixed[name] = (span[0], span[1] if len(span) > 1 else None)
-    if not fixed:
-        raise fields.error("fixed", "it names no piece")
-    return Form(fixed=fixed), tuple(fixed)
-
-
-def _check_names(fields: Fields, key: str, names: tuple[str, ...] | list[str], keep: tuple[str, ...]) -> None:
-    for name in names:
-        if name in PIECES or name in keep:
-            continue
-        alike = [known for known in PIECES if known.startswith(name) or name.startswith(known.split("_")[0])]
-        alike = alike or difflib.get_close_matches(name, PIECES, 3)
-        hint = f"; did you mean {' or '.join(alike[:3])}?" if alike else "."
-        raise fields.error(
-            key, f"{name!r} is no known name{hint} The names stand in docs/recipes.md; list others in `keep`"
-        )
-
-
-def _constants(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
-    constants = {}
-    for name in list(fields):
-        if name in _OF_LINES:
-            hint = (
-                "the receiver's own locator is called `place`"
-                if name == "locator"
-                else "it belongs to a line"
-            )
-            raise fields.error(name, f"{name!r} cannot be a constant: {hint}")
-        _check_names(fields, name, [name], keep)
-        value = str(fields.take(name, (str, int, float)))
-        if target_of(name) in NUMBER_TARGETS and not _is_number(constant_value(name, value)[1]):
-            raise fields.error(name, f"{value!r} is no number that can be used")
-        _check_clean(fields, name, value)
-        constants[name] = value
-    return constants
-
-
-def _is_number(text: str) -> bool:
-    return re.fullmatch(NUMBER_FORM, text) is not None
-
-
-def _check_clean(fields: Fields, key: str, text: str) -> None:
-    """Stop where a text would break the line that it goes into."""
-    if not text.isprintable():
-        raise fields.error(key, f"{text!r} has a character that no value can hold, like a TAB")
 
 
 def _values(top: Fields, pieces: set[str]) -> dict[str, dict[str, str]]:
@@ -312,7 +215,7 @@ def _values(top: Fields, pieces: set[str]) -> dict[str, dict[str, str]]:
             raise table.error(name, f"no line has a piece {name!r}")
         values[name] = table.strings(name)
         for text in values[name].values():
-            _check_clean(table, name, text)
+            check_clean(table, name, text)
     return values
 
 
