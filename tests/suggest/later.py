@@ -51,7 +51,7 @@ def blank_calls() -> Shape:
     out.add("Day        UTC      Signal kHz   S/N  Caller     Called     Loc")
     for h in made.heard:
         out.heard(
-            f"{h.time:%d %b %Y} {h.time:%H:%M:%S} {(h.dial_hz + h.audio_hz) / 1000:>10.3f} {h.snr_db:>4}  {h.sender:<10} "
+            f"{h.time:%d %b %Y %H:%M:%S} {(h.dial_hz + h.audio_hz) / 1000:>10.3f} {h.snr_db:>4}  {h.sender:<10} "
             f"{h.addressee:<10} {h.locator}".rstrip(),
             h,
             late_s=None, mode=None,
@@ -93,8 +93,8 @@ def two_receivers() -> Shape:
     out.add("rx,stamp,mhz,pitch_hz,db,kind,worked,heard,square")
     for h in made.heard:
         out.heard(
-            f"{made.draw.choice(['hut', 'barn'])},{h.time:%d.%m.%Y %H:%M:%S},{h.dial_hz / 1e6:.4f},{h.audio_hz},{h.snr_db},"
-            f"{h.mode},{h.addressee},{h.sender},{h.locator}", h, late_s=None,
+            f"{made.draw.choice(['hut', 'barn'])},{h.time:%d.%m.%Y %H:%M:%S},{h.dial_hz / 1e6:.4f},{h.audio_hz},"
+            f"{h.snr_db},{h.mode},{h.addressee},{h.sender},{h.locator}", h, late_s=None,
         )  # fmt: skip
     return out.shape("two-receivers", "two.csv")
 

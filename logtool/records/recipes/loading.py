@@ -13,7 +13,7 @@ from logtool.records.layout import KEY_FORM, KINDS
 from logtool.records.recipes.fields import Fields
 from logtool.records.recipes.forming import form_of
 from logtool.records.recipes.names import PIECES, target_of
-from logtool.records.recipes.naming import check_clean, check_names, constants_of
+from logtool.records.recipes.naming import OF_LINES, check_clean, check_names, constants_of
 from logtool.records.recipes.patterns import groups_of, template_pattern
 from logtool.records.recipes.recipe import (
     BAD_ENCODING,
@@ -89,7 +89,7 @@ def recipe_of(text: str, name: str) -> Recipe:
     name_pattern = named.pattern("pattern")
     name_pieces = () if name_pattern is None else tuple(name for name in groups_of(name_pattern) if name)
     check_names(named, "pattern", name_pieces, keep)
-    for word in {*name_pieces} & {*_OF_LINES} - {"date"}:
+    for word in {*name_pieces} & {*OF_LINES} - {"date"}:
         raise named.error("pattern", f"{word!r} cannot come from a file's name: it belongs to a line")
     message = top.table("message") if "message" in top else None
     recipe = Recipe(

@@ -10,7 +10,7 @@ from logtool.records.recipes.fields import Fields
 from logtool.records.recipes.names import NUMBER_TARGETS, PIECES, target_of
 from logtool.records.recipes.values import constant_value
 
-_OF_LINES = ("time", "date", "text", "locator")  # what only a line can say
+OF_LINES = ("time", "date", "text", "locator")  # what only a line can say
 
 
 def check_names(fields: Fields, key: str, names: tuple[str, ...] | list[str], keep: tuple[str, ...]) -> None:
@@ -30,7 +30,7 @@ def constants_of(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
     """Return a table of constants, as texts."""
     constants = {}
     for name in list(fields):
-        if name in _OF_LINES:
+        if name in OF_LINES:
             hint = (
                 "the receiver's own locator is called `place`"
                 if name == "locator"
