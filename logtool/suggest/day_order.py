@@ -10,9 +10,6 @@ from logtool.suggest.timeforms import (
     moment_of,
 )
 
-FIRST_YEAR = 2000  # no log of a computer's decoder is older
-
-
 _NEAR_DAYS = 400  # a difference between neighbours that shows that the reading is wrong
 
 
@@ -78,7 +75,6 @@ def _cost(reading: Moments, parts: list[int]) -> float:
         step = (b - a).total_seconds() / 86_400
         days += -3 * step if step < 0 else step
     known = [moment for moment in reading if moment is not None]
-    days += _NEAR_DAYS * sum(moment.year < FIRST_YEAR for moment in known)
     return days + _NEAR_DAYS * (len(reading) - len(known))
 
 
@@ -106,7 +102,6 @@ def date_in_name(name: str) -> tuple[str, list[str], re.Match[str]] | None:
         else:
             forms = [f"%y{sign}%m{sign}%d", f"%d{sign}%m{sign}%y", f"%m{sign}%d{sign}%y"]
         forms = [form for form in forms if moment_of(written, form) is not None]
-        forms = [form for form in forms if moment_of(written, form).year >= FIRST_YEAR]  # type: ignore[union-attr]
         if forms:
             return written, forms, match
     return None

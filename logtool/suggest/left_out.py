@@ -64,7 +64,7 @@ def _could_be(roles: Roles, column: Column, spread: Spread | None) -> list[str]:
     ):
         return []
     if spread is not None:
-        if spread.low >= -60 and spread.high <= 80:
+        if spread.p5 >= -60 and spread.middle <= 80:
             could.append("snr_db")
         if spread.p5 >= -60 and spread.p95 <= 60:
             could.append("late_s")

@@ -46,12 +46,14 @@ class OrderWay:
     empties: tuple[tuple[str, ...], ...]
     tabs: bool
     strict: bool = False
+    may_end: bool = False  # the line may end before the text
 
     def rule(self, names: Mapping[int, str], forms: Mapping[int, str]) -> list[str]:
         """Return the rule's TOML lines."""
         at_end = self.text in (-1, len(self.glue) - 1)
         plain_blanks = (
             at_end
+            and not self.may_end
             and all(not glue.strip(" \t") for glue in self.glue)
             and not self.end
             and not self.blanks_inside
@@ -75,6 +77,9 @@ class OrderWay:
             else:
                 out += escaped(glue) if glue else ""
             is_text = k == self.text
+            if is_text and self.may_end:
+                text = f"(?P<{names[k]}>.*?)" if k in names else ".*?"
+                return self._ended(out.removesuffix(escaped(glue)) + f"(?:{escaped(glue)}{text})?")
             form = ".*?" if is_text else forms.get(k) or FORMS.get(self.kinds[k], r"[^ \t]+")
             if self.empties[k] and form == FORMS["number"]:
                 form = "|".join([form, *map(escaped, self.empties[k])])
@@ -84,5 +89,8 @@ class OrderWay:
                 out += escaped(self.always[k])
             else:
                 out += f"(?:{form})" if "|" in form else form
+        return self._ended(out)
+
+    def _ended(self, out: str) -> str:
         out += escaped(self.end.rstrip()) + r"[ \t]*"
         return out.replace(" +", r"[ \t]+") if self.tabs else out

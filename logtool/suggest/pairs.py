@@ -53,15 +53,17 @@ class PairsWay:
             out += escaped(glue) if glue.strip() or k else ""
             out += f"(?P<{names[k]}>[^ \\t]+?)" if k in names else r"[^ \t]+?"
         out += (escaped(self.lead_glue[self.lead]) or _BETWEEN) if self.lead else ""
-        for j, key in enumerate(order):
+        begun = False  # whether a key that is never left out came already
+        for key in order:
             column = self.keys.index(key)
             form = ".*?" if key in self.blanks else r"[^ \t;|]*?" if key in self.commas else r"[^ \t,;|]*?"
             value = f'"?(?P<{names[column]}>{form})"?' if column in names else f'"?{form}"?'
             pair = escaped(key) + f" ?{self.sign} ?" + value
-            if key in self.optional:
-                out += f"(?:{pair}(?:{_BETWEEN}|$))?" if not j else f"(?:{_BETWEEN}{pair})?"
+            if key not in self.optional:
+                out += (_BETWEEN if begun else "") + pair
+                begun = True
             else:
-                out += (_BETWEEN if j and not (j == 1 and order[0] in self.optional) else "") + pair
+                out += f"(?:{_BETWEEN}{pair})?" if begun else f"(?:{pair}(?:{_BETWEEN}|$))?"
         return out + r"[ \t,;|]*"
 
 

@@ -160,8 +160,18 @@ def _table(lines: list[str], cut: list[tuple[list[Core], str]], rows: list[int],
     inside = any(" " in value for column in columns[:k] for value in column.values)
     empties = tuple(tuple(sorted(words_for_nothing(column.values))) for column in columns)
     tabs = any("\t" in lines[i] for i in rows)
+    may_end = has_text and not tail and any(not text for text in columns[-1].values)
     way = OrderWay(
-        tuple(glue), tuple(kinds), always, k if has_text else -1, end, inside, empties, tabs, dropped > 0
+        tuple(glue),
+        tuple(kinds),
+        always,
+        k if has_text else -1,
+        end,
+        inside,
+        empties,
+        tabs,
+        dropped > 0,
+        may_end,
     )
     table = Table(way, columns, rows, strict=dropped > 0)
     give_names(table, lines)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 from dataclasses import dataclass, replace
 
+from logtool.suggest.checking import doubts_by_trial
 from logtool.suggest.day_order import date_in_name
 from logtool.suggest.doubts import Doubt
 from logtool.suggest.draft import Draft
@@ -21,7 +22,7 @@ from logtool.suggest.structured import SEPARATORS, SeparatedWay, json_table, sep
 from logtool.suggest.tables import Table, holds_call, score
 from logtool.suggest.timeforms import shared_forms
 from logtool.suggest.values import given
-from logtool.suggest.writing import no_structure, written
+from logtool.suggest.writing import no_structure, settle, written
 
 _LEAST_SCORE = 1.5
 _LEAST_SECOND = 5  # lines
@@ -87,6 +88,9 @@ def suggest(path: str | os.PathLike[str]) -> Suggestion:
     if not any(name in ("sender", "text", "addressee") for name in roles.names.values()):
         return _without_structure(look, "no column of call signs or messages was found")
     draft = _draft(look, table, roles)
+    settle(draft)
+    _, trial = written(draft)
+    draft.doubts += doubts_by_trial(draft, trial, path)
     recipe, trial = written(draft)
     essential = [doubt for doubt in draft.doubts if doubt.essential]
     return Suggestion(recipe, tuple(str(doubt) for doubt in draft.doubts), not essential, trial)

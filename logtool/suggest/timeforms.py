@@ -10,6 +10,7 @@ from functools import lru_cache
 
 from logtool.suggest.values import ENOUGH
 
+FIRST_YEAR, LAST_YEAR = 2000, 2099  # no log of a computer's decoder is older
 ISO, UNIX_S, UNIX_MS = "iso", "unix_s", "unix_ms"
 _MONTH = "(?:Jan|Feb|Mar|Apr|May|Jun|Jul|Aug|Sep|Oct|Nov|Dec)"
 _LONG_MONTH = "(?:January|February|March|April|June|July|August|September|October|November|December)"
@@ -185,6 +186,7 @@ def moment_of(value: str, form: str) -> datetime | None:
             return read.astimezone(UTC).replace(tzinfo=None) if read.tzinfo else read
         if not has_year(form) and has_date(form):
             return datetime.strptime("2000 " + value, "%Y " + form)
-        return datetime.strptime(value, form)
+        read = datetime.strptime(value, form)
+        return None if has_year(form) and not FIRST_YEAR <= read.year <= LAST_YEAR else read
     except ValueError:
         return None

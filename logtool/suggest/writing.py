@@ -19,7 +19,6 @@ _SHOWN_LINES = 5
 
 def written(draft: Draft) -> tuple[str, str]:
     """Return the recipe's text, and the same with stand-ins for what has to be filled in."""
-    _settle(draft)
     head = _head(draft)
     body = [
         *_top(draft),
@@ -67,7 +66,7 @@ def no_structure(look: Look, why: str) -> str:
     return "\n".join(out) + "\n"
 
 
-def _settle(draft: Draft) -> None:
+def settle(draft: Draft) -> None:
     """Add to the doubts what no text of this kind could tell."""
     roles, times = draft.roles, draft.roles.times
     doubts = draft.doubts

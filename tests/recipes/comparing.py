@@ -34,7 +34,7 @@ def recipe(rules: str, top: str = "", constants: str = CONSTANTS) -> str:
     return f"{TOP}{top}\n{constants}{rules}"
 
 
-def rule(kind: str = "heard", **keys: object) -> str:
+def rule(kind: str = "heard", /, **keys: object) -> str:
     """Return one [[line]]; values are written as TOML, texts in '...'."""
     return "[[line]]\n" + "".join(f"{key} = {toml(value)}\n" for key, value in {"kind": kind, **keys}.items())
 
@@ -113,7 +113,9 @@ def compare(
 def in_blocks_of(monkeypatch: pytest.MonkeyPatch, size: int) -> None:
     """Let the engine be given so many bytes at a time from here on."""
     monkeypatch.setattr(sources, "BLOCK_BYTES", size)
-    monkeypatch.setitem(blocks.blocks_of.__kwdefaults__, "joined_bytes", size)
+    defaults = blocks.blocks_of.__kwdefaults__
+    assert defaults is not None
+    monkeypatch.setitem(defaults, "joined_bytes", size)
 
 
 def compare_ledger(folder: Path, text: str, files: dict[str, bytes], first_day: str | None = None) -> None:

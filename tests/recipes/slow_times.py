@@ -13,6 +13,7 @@ DAY = timedelta(days=1)
 NEW_DAY = timedelta(hours=12)
 OVER_MIDNIGHT = timedelta(minutes=2)  # so little back over midnight is a step of the clock
 NEW_YEAR = timedelta(days=182)
+LEAP_YEAR = timedelta(days=366)  # times without a year are read in one
 OUT_OF_ORDER = timedelta(minutes=10)  # in an hour that comes twice
 _ISO = re.compile(
     r"(\d{4}-\d\d-\d\d)[T ](\d\d:\d\d)(:\d\d)?(?:[.,](\d{1,6}))?(Z|[+-]\d\d(?::?\d\d)?)?", re.ASCII
@@ -153,8 +154,11 @@ class Clock:
     def _with_year(self, yearless: datetime) -> datetime | None:
         if self._year is None:
             return None
-        if self._last_in_year is not None and yearless - self._last_in_year < -NEW_YEAR:
+        rise = timedelta() if self._last_in_year is None else yearless - self._last_in_year
+        if rise < -NEW_YEAR:
             self._year += 1
+        elif rise > LEAP_YEAR - OVER_MIDNIGHT:
+            self._year -= 1
         self._last_in_year = yearless
         try:
             return yearless.replace(year=self._year)

@@ -60,7 +60,7 @@ def test_fixed_places_are_characters() -> None:
         rule("carry", name="day", pattern="(?P<date>.*)-", date_form="iso")
         + rule(fixed=fixed, time_form="%H%M")
     )
-    data = "2026-03-01-\n1800 Q1A \u00e9\u20ac\U0001f4fb x  \n1801 Q1\n1802\n18\u00e9 0Q1A\n25 00 Q1A\n180"
+    data = "2026-03-01-\n1800 Q1A \u00e9\u20ac\U0001f4fb x  \n1801 Q1\n1802\n18\u00e9 0 Q1A\n25 00 Q1A\n180"
     assert pieces(text, data) == [
         "day", ["Q1A", "\u00e9\u20ac\U0001f4fb x"], ["Q1", ""], ["", ""], "no-rule", "no-rule", "no-rule",
     ]  # fmt: skip

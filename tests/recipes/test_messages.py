@@ -17,7 +17,7 @@ from tests.recipes.test_values import field
 
 AT = "2026-03-01T18:00:00Z"
 FORMS = tomllib.loads((Path(__file__).parents[1] / "reference" / "callsign_forms.toml").read_text())["forms"]
-GOOD = [*FORMS["good"], *FORMS["compound"], *FORMS["bracketed"]]
+GOOD = [*FORMS["good"], *map("".join, FORMS["digit_first"]), *FORMS["compound"], *FORMS["bracketed"]]
 
 
 @pytest.mark.parametrize("call", GOOD)

@@ -19,7 +19,7 @@ from tests.recipes.making import made_recipe, made_text
 DAYS = [None, date(2026, 3, 1), date(2024, 2, 28), date(2025, 12, 31)]
 
 
-@settings(max_examples=40, deadline=None, suppress_health_check=[HealthCheck.too_slow])
+@settings(max_examples=30, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 @given(st.integers(0, 2**32), st.integers(1, 80))
 def test_each_line_is_what_the_slow_reading_says(seed: int, lines: int) -> None:
     rng = Random(seed)

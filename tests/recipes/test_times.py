@@ -183,6 +183,21 @@ def test_times_without_a_year(size: int, monkeypatch: pytest.MonkeyPatch) -> Non
     assert times_of(text, lines) == wanted
 
 
+@pytest.mark.parametrize("size", [12, 1 << 20])
+def test_a_step_back_over_new_year(size: int, monkeypatch: pytest.MonkeyPatch) -> None:
+    in_blocks_of(monkeypatch, size)
+    lines = [
+        "31.12. 23:59,Q1A",
+        "01.01. 00:00,Q1A",
+        "31.12. 23:59,Q1B",
+        "01.01. 00:01,Q1A",
+        "31.12. 23:58,Q1A",
+    ]
+    wanted = ["2025-12-31T23:59:00Z", "2026-01-01T00:00:00Z", "2025-12-31T23:59:00Z", "2026-01-01T00:01:00Z"]
+    found = times_of(recipe(heard("%d.%m. %H:%M")), lines, first_day=date(2025, 12, 31))
+    assert found == [*wanted, "2026-12-31T23:58:00Z"]  # three minutes back is a year on
+
+
 def test_times_that_mark_the_end_of_a_slot() -> None:
     top = "slot_s = 7.5\ntime_marks = 'end'\n"
     text = recipe(heard("iso") + rule("stop", pattern="stop (?P<time>.*)"), top)

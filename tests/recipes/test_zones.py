@@ -90,6 +90,15 @@ def test_the_hour_that_comes_twice_is_read_by_order(size: int, monkeypatch: pyte
     )
 
 
+@pytest.mark.parametrize("size", [20, 1 << 20])
+def test_the_order_is_that_of_all_lines(size: int, monkeypatch: pytest.MonkeyPatch) -> None:
+    in_blocks_of(monkeypatch, size)
+    rules = rule(separator=",", columns=["time", "sender"])
+    text = recipe(rules, "zone = 'Europe/Berlin'\n")
+    lines = "2026-10-25T01:30:00Z,Q1A\n2026-10-25 02:10:00,Q1B\n2026-10-25 02:45:00,Q1C\n"
+    assert [line.became[11:16] for line in compare(text, lines)] == ["01:30", "01:10", "01:45"]
+
+
 def test_half_an_hour_that_comes_twice() -> None:
     times = ["01:29", "01:31", "01:59", "01:30", "01:45", "02:00"]
     assert utc_of("Australia/Lord_Howe", "2026-04-05", times) == [

@@ -121,7 +121,7 @@ def shape_of(seed: int) -> Shape:
     """Return a random log with its truth."""
     plan = plan_of(seed)
     draw = plan.draw
-    start = datetime(2026, draw.randrange(1, 12), draw.randrange(1, 27), draw.randrange(24), 0, tzinfo=UTC)
+    start = datetime(2026, draw.randrange(1, 12), draw.randrange(1, 25), draw.randrange(24), 0, tzinfo=UTC)
     made = make(seed + 1000, count=draw.choice([60, 150, 400]), start=start, dials=draw.choice([1, 1, 3]),
                 modes=draw.choice([("KB15",), ("KB15", "KB60")]))  # fmt: skip
     columns = set(plan.columns)

@@ -17,6 +17,7 @@ BACK_US = (
 )  # so little back over midnight is a step of the clock and no gap of a day; our choice
 _NEW_YEAR_US = 182 * DAY_US  # a fall by more, in times without a year, is a new year
 _ORDER_SLACK_US = 600 * SECOND_US  # lines may be so much out of order in an hour that comes twice; our choice
+_LEAP_YEAR_US = 366 * DAY_US  # times without a year are read in one
 NO_TIME = np.iinfo(np.int64).min
 
 
@@ -79,7 +80,7 @@ class FileClock:
         shifted = known & (lacking != ABSOLUTE)
         utc_us = local_us
         if self._zone != "UTC" and shifted.any():
-            utc_us[shifted] = self._from_zone(lines[shifted], local_us[shifted])
+            utc_us[known] = self._from_zone(lines[known], local_us[known], shifted[known])
         if known.any():
             self._last_utc_us = int(utc_us[known][-1])
         return utc_us
@@ -147,7 +148,8 @@ class FileClock:
             return np.full(len(stamps_us), NO_TIME)
         first = stamps_us[0] if self._last_in_year_us is None else self._last_in_year_us
         rise_us = np.diff(stamps_us, prepend=first)
-        years = self._year + np.cumsum(rise_us < -_NEW_YEAR_US)
+        back = rise_us > _LEAP_YEAR_US - BACK_US
+        years = self._year + np.cumsum((rise_us < -_NEW_YEAR_US).astype(np.int64) - back)
         self._year, self._last_in_year_us = int(years[-1]), int(stamps_us[-1])
         read = stamps_us.astype("M8[us]")
         month = read.astype("M8[M]")
@@ -158,8 +160,10 @@ class FileClock:
         there = moved.astype("M8[M]") == months  # no 29 February in this year
         return np.where(there, moved.astype(np.int64), NO_TIME)
 
-    def _from_zone(self, lines: np.ndarray, local_us: np.ndarray) -> np.ndarray:
-        earlier_us, later_us, skipped = both_utc_us(local_us, self._zone)
+    def _from_zone(self, lines: np.ndarray, local_us: np.ndarray, shifted: np.ndarray) -> np.ndarray:
+        """Return the instants of local times, where `shifted`; the others are UTC already."""
+        earlier_us, later_us = local_us.copy(), local_us.copy()
+        earlier_us[shifted], later_us[shifted], skipped = both_utc_us(local_us[shifted], self._zone)
         self.notes.skipped += int(skipped.sum())
         doubtful = np.flatnonzero(earlier_us != later_us)
         utc_us = earlier_us
