@@ -15,7 +15,8 @@ BoolArray = NDArray[np.bool_]
 US_PER_S = 1_000_000
 _FORGOTTEN = 1e-9  # a correlation below this is none
 _TABLE_END, _TABLE_STEP = 9.0, 0.001  # linear interpolation is off by at most 3e-8
-_MIXTURE_POINTS = 96
+_MIXTURE_POINTS = 64
+_MARGINS, _NEAR_DB, _FAR_DB = 2001, 20.0, 1000.0
 _MIXTURE_REACH, _MIXTURE_LEFT = 8.0, 32.0  # what lies beyond has a probability below 1e-6
 
 
@@ -149,7 +150,7 @@ def chance(margin_db: FloatArray, width_db: float, fadings: tuple[tuple[float, f
     """
     variances, weights = np.array([width_db**2]), np.ones(1)
     for sd_db, df in fadings:
-        scale, weight = _mixture(df)
+        scale, weight = _mixture(df if sd_db else 0.0)
         variances = np.add.outer(variances, sd_db**2 * scale).ravel()
         weights = np.multiply.outer(weights, weight).ravel()
     deviations = np.sqrt(variances)
@@ -157,7 +158,8 @@ def chance(margin_db: FloatArray, width_db: float, fadings: tuple[tuple[float, f
         return (np.asarray(margin_db) > 0).astype(np.float64)
     if deviations.size == 1:
         return normal_share(margin_db / deviations[0])
-    at_db = np.linspace(-1.0, 1.0, 2001) ** 3 * 2000.0 * 1.0  # finest where it is steepest
+    evenly = np.linspace(-1.0, 1.0, _MARGINS)
+    at_db = _NEAR_DB * evenly + _FAR_DB * evenly**3  # finest where the chance is steepest
     shares = np.array([float(weights @ normal_share(x / deviations)) for x in at_db.tolist()])
     return np.asarray(np.interp(margin_db, at_db, shares))
 

@@ -23,7 +23,6 @@ _CORE = re.compile(
     |(?:(?<=\d),(?=\d)|[^\s\[\]{{}}();|"'=,<>])+""",
     re.VERBOSE,
 )
-_PERIOD = "."  # at a word's end it is a sign
 
 
 @dataclass(frozen=True)

@@ -122,6 +122,6 @@ def _remarks(draft: Draft, table: Table, roles: Roles) -> list[str]:
                 + (f": {note}" if note else "")
                 + (" (NOT SURE, see above)" if unsure else "")
             )
-        elif any(column.values):
+        elif any(column.values) and not column.literal:
             out += comment(f"{column.label} is not read: {note or 'see above'} ({quoted(column.values, 2)})")
     return out

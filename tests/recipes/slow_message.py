@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 
 DEFAULT_PATTERNS = [
+    "{sender} {locator} {power_dbm}",
     "CQ|QRZ [{word}] [DE] {sender} [{locator}] ...",
     "{addressee} [DE] {sender} [R] {locator} ...",
     "{addressee} [DE] {sender} {report_db} ...",

@@ -131,7 +131,7 @@ class SlowRecipe:
             text = cleaned(pieces["date"], "date", self.recipe)
             day = None if text is None else written_date(text, rule["date_form"])
             is_lost = text is not None and day is None
-            if day is not None:
+            if text is not None:
                 self.clock.give_date(day)
         for piece in rule.get("carry", pieces_of(rule) if kind == "carry" else []):
             if own.get(target(piece)) is not None:

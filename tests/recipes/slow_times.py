@@ -14,7 +14,7 @@ NEW_DAY = timedelta(hours=12)
 OVER_MIDNIGHT = timedelta(minutes=2)  # so little back over midnight is a step of the clock
 NEW_YEAR = timedelta(days=182)
 LEAP_YEAR = timedelta(days=366)  # times without a year are read in one
-OUT_OF_ORDER = timedelta(minutes=10)  # in an hour that comes twice
+OUT_OF_ORDER = timedelta(minutes=2)  # in an hour that comes twice
 _ISO = re.compile(
     r"(\d{4}-\d\d-\d\d)[T ](\d\d:\d\d)(:\d\d)?(?:[.,](\d{1,6}))?(Z|[+-]\d\d(?::?\d\d)?)?", re.ASCII
 )
@@ -110,17 +110,16 @@ class Clock:
 
     def __init__(self, zone: str, first_day: date | None) -> None:
         self._zone = ZoneInfo(zone)
-        self._day = first_day
-        self._last_of_day: timedelta | None = None
-        self._year = first_day.year if first_day else None
-        self._last_in_year: datetime | None = None
+        self.give_date(first_day)
         self._last: datetime | None = None  # in UTC
         self.steps = self.doubtful = self.skipped = 0
 
-    def give_date(self, day: date) -> None:
-        """Take note of a date that a line gives."""
-        self._day, self._last_of_day = day, None
-        self._year, self._last_in_year = day.year, None
+    def give_date(self, day: date | None) -> None:
+        """Take note of a date that a line gives; None for one that cannot be read."""
+        self._day = day
+        self._last_of_day: timedelta | None = None
+        self._year = day.year if day else None
+        self._last_in_year = datetime(2000, day.month, day.day) if day else None
 
     def utc(self, written: Written) -> datetime | None:
         """Return the instant in UTC; None where no date is known."""

@@ -51,7 +51,8 @@ def value(text: str | None, name: str, recipe: dict[str, Any]) -> str | None:
         never = [word.upper() for word in recipe.get("message", {}).get("never_locators", ["RR73"])]
         return None if text.upper() in never else text
     if goal == "text":
-        return text.replace("\\", "\\\\").replace("\t", "\\t")
+        escapes = {"\\": "\\\\", "\t": "\\t", "\n": "\\n", "\r": "\\r"}
+        return "".join(escapes.get(character, character) for character in text)
     return text
 
 
@@ -59,7 +60,7 @@ def number(text: str, name: str) -> str:
     """Return a written number in the layout's unit; as it stands where the unit is the layout's own."""
     goal, factor = UNITS.get(name, (name, "1"))
     if name not in UNITS and not (goal == "dial_hz" and "." in text):
-        return text.removeprefix("+") if goal != "dial_hz" else text
+        return text.removeprefix("+")
     if not re.fullmatch(r"[+-]?(\d+\.?\d*|\.\d+)", text, re.ASCII):
         return UNREADABLE
     exact = Decimal(text) * Decimal(factor)

@@ -86,7 +86,7 @@ def test_json() -> None:
         f'{{"at": "{AT}", "from.call": "Q1A", "from": []}}',
     ])  # fmt: skip
     assert pieces(text, data) == [
-        ["Q1A", 'a\u00e9\\t\\\\ "b"'], ["", ""], "control-character", "control-character", "too-many-fields",
+        ["Q1A", 'a\u00e9\\t\\\\ "b"'], ["", ""], ["", "one\\ntwo"], "control-character", "too-many-fields",
         "no-rule", "no-rule", "no-rule", "no-rule", "no-rule", "no-rule", "no-rule", "no-rule", ["", ""],
     ]  # fmt: skip
 

@@ -50,6 +50,8 @@ def told(messages: list[str], table: str = "[message]\n", **more: object) -> lis
     ("message", "wanted"),
     [
         ("CQ Q1ABC JN58", ("Q1ABC", "", "JN58", "", "")),
+        ("Q1ABC JN58 37", ("Q1ABC", "", "JN58", "", "")),
+        ("Q1ABC JN58TD 37", ("Q1ABC", "", "JN58TD", "", "")),  # the locator has a call sign's form as well
         ("CQ Q1ABC", ("Q1ABC", "", "", "", "")),
         ("cq dx q1abc jn58td", ("Q1ABC", "", "JN58TD", "", "")),
         ("CQ 070 Q1ABC JN58 and more", ("Q1ABC", "", "JN58", "", "")),

@@ -77,7 +77,7 @@ def test_a_date_comes_from_its_own_line() -> None:
 def test_a_date_that_cannot_be_read_is_told() -> None:
     text = recipe(CARRIED + heard("%H:%M"))
     found = compare(text, "== 2026-03-01\n18:00,Q1A\n== 2026-02-30\n18:05,Q1A\n")
-    assert [line.reason for line in found] == ["", "", "bad-time", ""]
+    assert [line.reason for line in found] == ["", "", "bad-time", "no-date"]
 
 
 def test_a_date_comes_from_a_carry_line_and_none_before_it() -> None:

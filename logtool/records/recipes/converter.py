@@ -15,7 +15,7 @@ from logtool.records.recipes.making import carried_targets, carrying, guarded_sq
 from logtool.records.recipes.prepared import Prepared, prepared_blocks
 from logtool.records.recipes.recipe import HEADER_RULE, Recipe
 from logtool.records.recipes.steps import Steps
-from logtool.records.recipes.times import NO_TIME, FileClock
+from logtool.records.recipes.times import LOST_DATE, NO_TIME, FileClock
 from logtool.records.recipes.values import column, constant_value
 
 if TYPE_CHECKING:
@@ -144,13 +144,16 @@ class Converter:
         """Make the relation `timed` of i and time_us (UTC) for all lines whose time is known."""
         import pyarrow as pa
 
-        found = self._connection.execute("""
+        found = self._connection.execute(
+            """
             SELECT i, CASE WHEN stamp_us IS NULL THEN -1 ELSE lacking END AS lacking,
-                coalesce(stamp_us, 0) AS stamp_us, day_us
-            FROM parsed WHERE stamp_us IS NOT NULL OR day_us IS NOT NULL ORDER BY i""").fetchnumpy()
-        i, lacking = (np.asarray(found[name], np.int64) for name in ("i", "lacking"))
-        days_us = np.ma.filled(np.ma.asarray(found["day_us"], np.int64), NO_TIME)
-        stamps_us = np.asarray(found["stamp_us"], np.int64)
+                coalesce(stamp_us, 0) AS stamp_us, CASE WHEN lost_date THEN ? ELSE coalesce(day_us, ?) END AS day_us
+            FROM parsed WHERE stamp_us IS NOT NULL OR day_us IS NOT NULL OR lost_date
+            ORDER BY i""",
+            [LOST_DATE, NO_TIME],
+        ).fetchnumpy()
+        names = ("i", "lacking", "stamp_us", "day_us")
+        i, lacking, stamps_us, days_us = (np.asarray(found[name], np.int64) for name in names)
         utc_us = self._clock.utc_us(self._lines + i + 1, lacking, stamps_us, days_us)
         known = utc_us != NO_TIME
         self._connection.register("timed", pa.table({"i": i[known], "time_us": utc_us[known]}))

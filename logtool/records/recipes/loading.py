@@ -27,6 +27,7 @@ from logtool.records.recipes.recipe import (
 )
 
 DEFAULT_MESSAGES = (  # common practice, no source: the station called first, the caller second
+    "{sender} {locator} {power_dbm}",
     "CQ|QRZ [{word}] [DE] {sender} [{locator}] ...",
     "{addressee} [DE] {sender} [R] {locator} ...",
     "{addressee} [DE] {sender} {report_db} ...",

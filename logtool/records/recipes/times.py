@@ -11,14 +11,18 @@ from logtool.records.recipes.timeforms import ABSOLUTE, OF_DAY, YEARLESS
 from logtool.records.recipes.zones import SECOND_US, both_utc_us
 
 DAY_US = 86_400 * SECOND_US
+_EPOCH_YEAR = 1970
 NEW_DAY_US = DAY_US // 2  # a fall by more is a new day, a smaller one a step of the clock
 BACK_US = (
     120 * SECOND_US
 )  # so little back over midnight is a step of the clock and no gap of a day; our choice
 _NEW_YEAR_US = 182 * DAY_US  # a fall by more, in times without a year, is a new year
-_ORDER_SLACK_US = 600 * SECOND_US  # lines may be so much out of order in an hour that comes twice; our choice
+_ORDER_SLACK_US = 120 * SECOND_US  # lines may be so much out of order in an hour that comes twice; our choice
 _LEAP_YEAR_US = 366 * DAY_US  # times without a year are read in one
 NO_TIME = np.iinfo(np.int64).min
+LOST_DATE = (
+    NO_TIME + 1
+)  # stands for a date that a line gives and nobody can read: none is known from there on
 
 
 @dataclass
@@ -47,11 +51,14 @@ class FileClock:
     def __init__(self, zone: str, day_us: int | None) -> None:
         self.notes = ClockNotes()
         self._zone = zone
-        self._day_us = day_us
+        self._day_us: int | None = None
         self._last_of_day_us: int | None = None
-        self._year: int | None = None if day_us is None else _years(np.array([day_us]))[0]
+        self._year: int | None = None
         self._last_in_year_us: int | None = None
         self._last_utc_us = NO_TIME
+        if day_us is not None:
+            self._day_us = day_us
+            self._begin_year(day_us)
 
     def utc_us(
         self, lines: np.ndarray, lacking: np.ndarray, stamps_us: np.ndarray, days_us: np.ndarray
@@ -67,7 +74,7 @@ class FileClock:
         stamps_us : ndarray of int64, shape (n,)
             The times as far as they are written.
         days_us : ndarray of int64, shape (n,)
-            Dates that lines give, `NO_TIME` where they give none.
+            Dates that lines give, `NO_TIME` where they give none, `LOST_DATE` where one cannot be read.
         """
         local_us = np.where(lacking >= 0, stamps_us, NO_TIME)
         of_day, yearless = lacking == OF_DAY, lacking == YEARLESS
@@ -92,11 +99,12 @@ class FileClock:
         given = np.flatnonzero(days_us != NO_TIME)
         at = np.flatnonzero(of_day)
         if not len(at):
-            self._day_us, self._last_of_day_us = int(days_us[given[-1]]), None
+            self._day_us, self._last_of_day_us = _known(days_us[given[-1]]), None
             return stamps_us[at]
         segment = np.searchsorted(given, at, side="right")  # 0: goes on from the block before
         start_us = NO_TIME if self._day_us is None else self._day_us
         bases_us = np.concatenate(([start_us], days_us[given]))
+        bases_us[bases_us == LOST_DATE] = NO_TIME
         times_us = stamps_us[at]
         before_us = np.concatenate(
             ([self._last_of_day_us if self._last_of_day_us is not None else -1], times_us[:-1])
@@ -116,7 +124,7 @@ class FileClock:
             bases_us[segment] == NO_TIME, NO_TIME, bases_us[segment] + days * DAY_US + times_us
         )
         if segment[-1] != len(given):
-            self._day_us, self._last_of_day_us = int(days_us[given[-1]]), None
+            self._day_us, self._last_of_day_us = _known(days_us[given[-1]]), None
         else:
             base_us = bases_us[segment[-1]]
             self._day_us = None if base_us == NO_TIME else int(base_us + days[-1] * DAY_US)
@@ -138,9 +146,18 @@ class FileClock:
         found = []
         for k, (start, stop) in enumerate(pairwise(starts)):
             if k:
-                self._year, self._last_in_year_us = int(_years(days_us[start : start + 1])[0]), None
+                self._begin_year(_known(days_us[start]))
             found.append(self._going_on(stamps_us[start:stop][yearless[start:stop]]))
         return np.concatenate(found)
+
+    def _begin_year(self, day_us: int | None) -> None:
+        """Go on from a date, as if there had been a time at its midnight."""
+        if day_us is None:
+            self._year = self._last_in_year_us = None
+            return
+        day = np.datetime64(day_us, "us")
+        self._year = int(day.astype("M8[Y]").astype(np.int64)) + _EPOCH_YEAR
+        self._last_in_year_us = int(_in_years(np.array([day]), np.array([2000]))[0].astype(np.int64))
 
     def _going_on(self, stamps_us: np.ndarray) -> np.ndarray:
         """Return times that were read in the year 2000 with their years, from the last year on."""
@@ -151,14 +168,8 @@ class FileClock:
         back = rise_us > _LEAP_YEAR_US - BACK_US
         years = self._year + np.cumsum((rise_us < -_NEW_YEAR_US).astype(np.int64) - back)
         self._year, self._last_in_year_us = int(years[-1]), int(stamps_us[-1])
-        read = stamps_us.astype("M8[us]")
-        month = read.astype("M8[M]")
-        months = (years - 1970).astype("M8[Y]").astype("M8[M]") + (
-            month - read.astype("M8[Y]").astype("M8[M]")
-        )
-        moved = months.astype("M8[us]") + (read - month.astype("M8[us]"))
-        there = moved.astype("M8[M]") == months  # no 29 February in this year
-        return np.where(there, moved.astype(np.int64), NO_TIME)
+        moved = _in_years(stamps_us.astype("M8[us]"), years)
+        return np.where(np.isnat(moved), NO_TIME, moved.astype(np.int64))
 
     def _from_zone(self, lines: np.ndarray, local_us: np.ndarray, shifted: np.ndarray) -> np.ndarray:
         """Return the instants of local times, where `shifted`; the others are UTC already."""
@@ -177,5 +188,15 @@ class FileClock:
         return utc_us
 
 
-def _years(instants_us: np.ndarray) -> np.ndarray:
-    return instants_us.astype("M8[us]").astype("M8[Y]").astype(np.int64) + 1970
+def _known(day_us: np.int64) -> int | None:
+    return None if day_us == LOST_DATE else int(day_us)
+
+
+def _in_years(instants: np.ndarray, years: np.ndarray) -> np.ndarray:
+    """Return the same month, day and time in other years; NaT for a 29 February that there is not."""
+    month = instants.astype("M8[M]")
+    months = (years - _EPOCH_YEAR).astype("M8[Y]").astype("M8[M]") + (
+        month - instants.astype("M8[Y]").astype("M8[M]")
+    )
+    moved = months.astype("M8[us]") + (instants - month.astype("M8[us]"))
+    return np.where(moved.astype("M8[M]") == months, moved, np.datetime64("NaT"))

@@ -58,7 +58,10 @@ def value_sql(text: str, piece: str, recipe: Recipe) -> str:
             f" THEN nullif({bare}, {sql_text(UNRESOLVED[1:-1])}) ELSE {text} END"
         )
     if target == "text":
-        return f"replace(replace({text}, '\\', '\\\\'), chr(9), '\\t')"
+        escaped = f"replace(replace({text}, '\\', '\\\\'), chr(9), '\\t')"
+        if any(rule.form.json for rule in recipe.rules):  # only there can a piece have more than one line
+            escaped = f"replace(replace({escaped}, chr(10), '\\n'), chr(13), '\\r')"
+        return escaped
     if target == "locator" and recipe.never_locators:
         words = ", ".join(sql_text(word.upper()) for word in recipe.never_locators)
         return f"CASE WHEN upper({text}) NOT IN ({words}) THEN {text} END"
@@ -103,7 +106,8 @@ def _number_sql(text: str, piece: str, decimal: str) -> str:
     elif target in INTEGER_TARGETS:
         if factor == "1":
             whole = f"coalesce({_whole(text, factor)}, {UNREADABLE})"
-            return f"CASE WHEN contains({text}, '.') THEN {whole} ELSE {text} END"
+            unsigned = f"CASE WHEN starts_with({text}, '+') THEN substring({text}, 2) ELSE {text} END"
+            return f"CASE WHEN contains({text}, '.') THEN {whole} ELSE {unsigned} END"
         return f"CASE WHEN {text} IS NOT NULL THEN coalesce({_whole(text, factor)}, {UNREADABLE}) END"
     elif factor == "1":
         return f"CASE WHEN starts_with({text}, '+') THEN substring({text}, 2) ELSE {text} END"
