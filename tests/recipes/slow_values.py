@@ -51,7 +51,9 @@ def value(text: str | None, name: str, recipe: dict[str, Any]) -> str | None:
         never = [word.upper() for word in recipe.get("message", {}).get("never_locators", ["RR73"])]
         return None if text.upper() in never else text
     if goal == "text":
-        escapes = {"\\": "\\\\", "\t": "\\t", "\n": "\\n", "\r": "\\r"}
+        escapes = {"\\": "\\\\", "\t": "\\t"}
+        if any("json" in rule for rule in recipe["line"]):  # a piece of others has one line
+            escapes |= {"\n": "\\n", "\r": "\\r"}
         return "".join(escapes.get(character, character) for character in text)
     return text
 

@@ -1,0 +1,1 @@
+"""What the figures allow to say, and how surely."""

@@ -1,0 +1,1 @@
+"""Which of two hears better, by how many dB, and how surely."""
