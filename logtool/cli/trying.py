@@ -10,13 +10,16 @@ import click
 from logtool.errors import UsageError
 
 if TYPE_CHECKING:
+    from logtool.records.recipes.recipe import Recipe
     from logtool.records.sources import Source
 
+STAND_IN_DATE = "2000-01-01"
 SUGGESTED_LINES = 10  # shown of a text with a suggested recipe
 
 
 def run_try(words: dict[str, Any]) -> int:
     """Print line by line what the recipe of a call makes of its files' first lines; return the exit status."""
+    from logtool.cli.run import EXIT_NO_RECORD
     from logtool.pages.tried import tried_text
     from logtool.records.opening import day_us_of, recipe_for
     from logtool.records.recipes.trying import try_lines
@@ -31,15 +34,13 @@ def run_try(words: dict[str, Any]) -> int:
         click.echo(f"{source.name}, its first {len(tried)} lines by {recipe.name}\n")
         click.echo(tried_text(tried))
         any_record |= any(one.became for one in tried)
-    return 0 if any_record else 1
+    return 0 if any_record else EXIT_NO_RECORD
 
 
 def run_suggest(words: dict[str, Any]) -> int:
     """Write a first recipe for a text, and tell what is in doubt and how its lines are read; return the status."""
-    from logtool.pages.tried import tried_text
+    from logtool.cli.run import EXIT_NO_RECORD
     from logtool.records.recipes.loading import recipe_of
-    from logtool.records.recipes.recipe import RecipeError
-    from logtool.records.recipes.trying import try_lines
     from logtool.records.writer import whole_file
     from logtool.suggest.suggestion import suggest
 
@@ -56,16 +57,30 @@ def run_suggest(words: dict[str, Any]) -> int:
         with whole_file(words["out"]) as file:
             file.write(suggestion.recipe)
         click.echo(f"recipe written to {words['out']}", err=True)
-    for doubt in suggestion.doubts:
-        click.echo(f"logtool: not sure: {doubt}", err=True)
-    try:
-        recipe = recipe_of(suggestion.recipe, words["out"] or "the suggested recipe")
-        tried = try_lines(recipe, sources[0], SUGGESTED_LINES)
-    except RecipeError as error:
-        click.echo(f"logtool: to be filled in: {error}", err=True)
-        return 1
-    click.echo(f"\nthe first {len(tried)} lines as they would be read:\n\n{tried_text(tried)}", err=True)
-    return 0 if any(one.became for one in tried) else 1
+    if not words["quiet"]:
+        for doubt in suggestion.doubts:
+            click.echo(f"logtool: to decide: {doubt}", err=True)
+    if not suggestion.trial:
+        return EXIT_NO_RECORD
+    if not words["quiet"]:
+        _show_as_read(recipe_of(suggestion.trial, "the suggested recipe"), sources[0])
+    return 0
+
+
+def _show_as_read(recipe: Recipe, source: Source) -> None:
+    """Show how a text's first lines would be read, with a stand-in for a date that it does not give."""
+    from logtool.pages.tried import tried_text
+    from logtool.records.opening import day_us_of
+    from logtool.records.recipes.recipe import NO_DATE
+    from logtool.records.recipes.trying import try_lines
+
+    tried = try_lines(recipe, source, SUGGESTED_LINES)
+    stand_ins = "stand-ins for what is to be filled in"
+    if any(one.reason == NO_DATE for one in tried):
+        tried = try_lines(recipe, source, SUGGESTED_LINES, day_us=day_us_of(STAND_IN_DATE, with_recipe=recipe))
+        stand_ins += f" and {STAND_IN_DATE} for the date (--date)"
+    click.echo(f"\nits first {len(tried)} lines as they would be read, with {stand_ins}:\n", err=True)
+    click.echo(tried_text(tried), err=True, nl=False)
 
 
 def _sources(words: dict[str, Any]) -> list[Source]:
