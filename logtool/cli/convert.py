@@ -67,13 +67,15 @@ def command(**words: Any) -> int:
 
     if words["suggest"] and words["try_"]:
         raise UsageError("--suggest writes a recipe and --try shows what one does; give one of them")
+    if words["suggest"] or words["try_"]:
+        _refuse_beside_text(words)
+    if words["out"] == STANDARD_OUTPUT:
+        words["out"] = None
     if words["suggest"]:
         return run_suggest(words)
     if words["try_"]:
         return run_try(words)
     name, words["to"] = _format_and_time(words["to"])
-    if words["out"] == STANDARD_OUTPUT:
-        words["out"] = None
     if words["out"] is None and FORMATS[name].binary and sys.stdout.isatty():
         raise UsageError(
             f"--to {name} is no text, so it is not shown on a terminal; name a file with -o FILE"
@@ -87,6 +89,16 @@ def command(**words: Any) -> int:
             notes = write_as(name, logs, choice, out)
         notes = [*unknown_words(logs.connection, choice, logs.privacy), *notes]
         return status_of(logs, quiet=words["quiet"], notes=notes)
+
+
+def _refuse_beside_text(words: dict[str, Any]) -> None:
+    """Stop where an option would do nothing beside --suggest or --try, which show the text itself."""
+    for name in ("to", "set_aside", "coarsen", "without_text", "hide_senders", "key"):
+        if words[name]:
+            raise UsageError(
+                f"--{name.replace('_', '-')} does nothing beside --suggest or --try, which show the text as it is; "
+                "leave it away"
+            )
 
 
 def _format_and_time(given: tuple[str, ...]) -> tuple[str, str | None]:

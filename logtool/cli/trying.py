@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import os
 import sys
+from contextlib import nullcontext
 from typing import TYPE_CHECKING, Any
 
 import click
@@ -10,6 +12,8 @@ import click
 from logtool.errors import UsageError
 
 if TYPE_CHECKING:
+    from pathlib import Path
+
     from logtool.records.recipes.recipe import Recipe
     from logtool.records.sources import Source
 
@@ -23,17 +27,21 @@ def run_try(words: dict[str, Any]) -> int:
     from logtool.pages.tried import tried_text
     from logtool.records.opening import day_us_of, recipe_for
     from logtool.records.recipes.trying import try_lines
+    from logtool.records.writer import whole_file
 
     recipe = recipe_for(words["recipe"])
     if recipe is None:
         raise UsageError("--try shows what a recipe does: give --recipe FILE; --suggest writes a first one")
     day_us = day_us_of(words["date"], with_recipe=recipe)
     any_record = False
-    for source in _sources(words):
-        tried = try_lines(recipe, source, words["lines"], day_us=day_us)
-        click.echo(f"{source.name}, its first {len(tried)} lines by {recipe.name}\n")
-        click.echo(tried_text(tried))
-        any_record |= any(one.became for one in tried)
+    sources = _sources(words)
+    _spare(words["out"], words["recipe"], *[source.path for source in sources])
+    with nullcontext(sys.stdout) if words["out"] is None else whole_file(words["out"]) as out:
+        for source in sources:
+            tried = try_lines(recipe, source, words["lines"], day_us=day_us)
+            click.echo(f"{source.name}, its first {len(tried)} lines by {recipe.name}\n", file=out)
+            click.echo(tried_text(tried), file=out)
+            any_record |= any(one.became for one in tried)
     return 0 if any_record else EXIT_NO_RECORD
 
 
@@ -49,6 +57,7 @@ def run_suggest(words: dict[str, Any]) -> int:
     sources = _sources(words)
     if len(sources) != 1 or sources[0].path is None:
         raise UsageError("--suggest looks at one file; name one, and not standard input")
+    _spare(words["out"], sources[0].path)
     suggestion = suggest(sources[0].path)
     if words["out"] is None:
         sys.stdout.write(suggestion.recipe)
@@ -67,6 +76,14 @@ def run_suggest(words: dict[str, Any]) -> int:
     return 0
 
 
+def _spare(out: str | None, *inputs: str | Path | None) -> None:
+    """Stop where the output would take the place of an input."""
+    if out is None:
+        return
+    if os.path.realpath(out) in {os.path.realpath(path) for path in inputs if path is not None}:
+        raise UsageError(f"{out} is what is read here; name another file to write to")
+
+
 def _show_as_read(recipe: Recipe, source: Source) -> None:
     """Show how a text's first lines would be read, with a stand-in for a date that it does not give."""
     from logtool.pages.tried import tried_text
@@ -77,7 +94,9 @@ def _show_as_read(recipe: Recipe, source: Source) -> None:
     tried = try_lines(recipe, source, SUGGESTED_LINES)
     stand_ins = "stand-ins for what is to be filled in"
     if any(one.reason == NO_DATE for one in tried):
-        tried = try_lines(recipe, source, SUGGESTED_LINES, day_us=day_us_of(STAND_IN_DATE, with_recipe=recipe))
+        tried = try_lines(
+            recipe, source, SUGGESTED_LINES, day_us=day_us_of(STAND_IN_DATE, with_recipe=recipe)
+        )
         stand_ins += f" and {STAND_IN_DATE} for the date (--date)"
     click.echo(f"\nits first {len(tried)} lines as they would be read, with {stand_ins}:\n", err=True)
     click.echo(tried_text(tried), err=True, nl=False)

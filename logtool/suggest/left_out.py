@@ -12,6 +12,7 @@ from logtool.suggest.numbers import (
 from logtool.suggest.tables import Column
 from logtool.suggest.values import (
     given,
+    is_locator,
     is_mode_word,
     quoted,
 )
@@ -45,7 +46,8 @@ def doubt_left_out(roles: Roles, columns: list[Column], spreads: dict[int, Sprea
             roles.doubts.append(
                 Doubt(
                     ", ".join(could),
-                    f"{column.label} ({shown}) is left out: its values do not tell whether it is one of these",
+                    f"{column.label} ({shown}) is left out: its values do not tell whether it is"
+                    f" {'one of these' if len(could) > 1 else 'this'}",
                 )
             )
         elif len(set(values)) > 1:
@@ -81,7 +83,8 @@ def _could_be(roles: Roles, column: Column, spread: Spread | None) -> list[str]:
         and all(map(is_mode_word, given(column.values)))
         and not (always and column.values[0].islower())
     ):
-        could.append("mode")
+        places = means & {"locator", "receiver"} and all(map(is_locator, given(column.values)))
+        could.append("locator" if places else "mode")
     elif column.kind == "other" and not always and any(c.isdigit() for value in column.values for c in value):
         could += ["snr_db", "late_s", "audio_hz", "dial_hz"]
     elif column.kind == "text":

@@ -40,14 +40,27 @@ def name_words(roles: Roles, columns: list[Column]) -> None:
             )
         elif words and all(map(_BAND_NAME.fullmatch, words)):
             roles.notes[k] = "names of bands"
-        elif "receiver" in meanings_of(columns[k].hint) and all(
-            map(_NAME.fullmatch, given(columns[k].values))
-        ):
+        elif _names_receivers(columns[k]):
             roles.names[k] = "receiver"
     _name_mode(
         roles,
         columns,
         [k for k in wordy if k not in roles.names and k not in roles.notes and k not in roles.where],
+    )
+
+
+def _names_receivers(column: Column) -> bool:
+    """Return whether a column names receivers.
+
+    `rx.grid` or `rx antenna` tell something else of them. A name that is a locator would tell the place, also
+    where places are coarsened.
+    """
+    means, values = meanings_of(column.hint), given(column.values)
+    return (
+        "receiver" in means
+        and means <= {"receiver", "sender", "other"}
+        and all(map(_NAME.fullmatch, values))
+        and not any(map(is_locator, values))
     )
 
 

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from logtool.records.quick import sql_text
 from logtool.records.recipes.cutting import BLANK, HEADER, REASON_OF, SKIPPED, parsed_sql, targets_of
 from logtool.records.recipes.file_facts import header_of, named_values
 from logtool.records.recipes.making import carried_targets, carrying, guarded_sql, made_sql, said_sql
@@ -29,7 +30,7 @@ _PASSED_OVER = {SKIPPED: "skip", HEADER: HEADER_RULE}  # what the ledger calls l
 
 @dataclass
 class Made:
-    """A block of made lines (in order, one for each line of the text) and what they are by the recipe."""
+    """A block of made lines with their endings (in order, one for each line of the text), and their rules."""
 
     out: pa.ChunkedArray
     rules: np.ndarray  # of each line: see `cutting`
@@ -69,7 +70,6 @@ class Converter:
         self._steps = Steps(connection)
         self._lines = 0
         connection.execute("SET TimeZone = 'UTC'")
-        connection.execute("SET preserve_insertion_order = true")
 
     @property
     def place_and_antenna(self) -> tuple[str, str] | None:
@@ -110,7 +110,7 @@ class Converter:
                 self._connection, self.recipe, prepared.block, self._file_name
             )
         self._connection.register("raw_block", prepared.table)
-        line = "rtrim(raw, chr(10))"
+        line = "replace(raw, chr(10), '')"  # there is one, at its end
         if prepared.has_return:
             line = f"CASE WHEN ends_with(raw, chr(13) || chr(10)) THEN raw[:-3] ELSE {line} END"
         self._connection.execute(
@@ -134,7 +134,9 @@ class Converter:
         self._note_earliest()
         if self.recipe.time_step_s:
             self._steps.tell_apart()
-        table = self._connection.sql("SELECT rule, out FROM made ORDER BY i").to_arrow_table()
+        table = self._connection.sql(
+            "SELECT rule, out || chr(10) AS out FROM made ORDER BY i"
+        ).to_arrow_table()
         rules = table.column("rule").to_numpy()
         self._count(rules)
         self._lines += prepared.lines
@@ -172,12 +174,15 @@ class Converter:
     def _note_earliest(self) -> None:
         if self.place_and_antenna is None:
             return
-        for receiver, time_us, dial_hz in self._connection.execute("""
+        no_earlier = "".join(
+            f" AND NOT (time_us >= {time_us} AND receiver = {sql_text(receiver)})"
+            for receiver, (time_us, _) in self.earliest.items()
+        )
+        for receiver, time_us, dial_hz in self._connection.execute(f"""
                 SELECT receiver, min(time_us), arg_min(dial_hz, (time_us, dial_hz)) FROM made
-                WHERE receiver IS NOT NULL AND time_us >= 0 AND regexp_full_match(dial_hz, '[0-9]+')
+                WHERE receiver IS NOT NULL AND time_us >= 0 {no_earlier} AND regexp_full_match(dial_hz, '[0-9]+')
                 GROUP BY receiver""").fetchall():
-            if receiver not in self.earliest or time_us < self.earliest[receiver][0]:
-                self.earliest[receiver] = (time_us, dial_hz)
+            self.earliest[receiver] = (time_us, dial_hz)
 
     def _count(self, rules: np.ndarray) -> None:
         for code, count in zip(*np.unique(rules, return_counts=True), strict=True):

@@ -30,18 +30,18 @@ _SIGNAL = "DECIMAL(24, 6)"
 def said_sql(recipe: Recipe) -> str:
     """Return SQL of a relation of text and what each message of `parsed` says: sender, addressee and so on."""
     assert recipe.messages is not None
-    anyone = "upper(text)"
-    which = " ".join(
-        f"WHEN regexp_full_match({anyone}, {sql_text(pattern)}) THEN {k}"
-        for k, pattern in enumerate(recipe.messages)
-    )
+    which, cuts = [], []
+    for k, pattern in enumerate(recipe.messages):
+        names = ", ".join(sql_text(name or f"_{i}") for i, name in enumerate(groups_of(pattern)))
+        which.append(f"WHEN regexp_full_match(message, {sql_text(pattern)}) THEN {k}")
+        whole = sql_text(f"^(?:{pattern})$")
+        cuts.append(f"CASE WHEN which = {k} THEN regexp_extract(message, {whole}, [{names}]) END AS s{k}")
     parts = []
     for part in MESSAGE_PARTS:
         found = [
-            f"WHEN {k} THEN nullif(regexp_extract({anyone}, {sql_text(f'^(?:{pattern})$')},"
-            f" {groups.index(part) + 1}), '')"
+            f"WHEN {k} THEN nullif(s{k}.{part}, '')"
             for k, pattern in enumerate(recipe.messages)
-            if part in (groups := groups_of(pattern))
+            if part in groups_of(pattern)
         ]
         raw = f"(CASE which {' '.join(found)} END)" if found else "NULL::VARCHAR"
         parts.append(f"{raw} AS raw_{part}")
@@ -50,8 +50,9 @@ def said_sql(recipe: Recipe) -> str:
     return f"""
         SELECT text, {", ".join(values)}, CASE WHEN {assisted} THEN '1' END AS assisted
         FROM (SELECT text, {", ".join(parts)} FROM (
-            SELECT text, CASE {which} END AS which
-            FROM (SELECT DISTINCT text FROM parsed WHERE text IS NOT NULL)))"""
+            SELECT text, which, {", ".join(cuts)} FROM (
+                SELECT text, message, CASE {" ".join(which)} END AS which
+                FROM (SELECT DISTINCT text, upper(text) AS message FROM parsed WHERE text IS NOT NULL))))"""
 
 
 def carried_targets(recipe: Recipe) -> list[str]:

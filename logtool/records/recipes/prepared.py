@@ -15,7 +15,8 @@ from logtool.records.sources import Text
 if TYPE_CHECKING:
     import pyarrow as pa
 
-_LF, _TAB, _CR, _DELETE, _C1_LEAD = b"\n\t\r\x7f\xc2"
+_LF = ord("\n")
+_C1_LEAD = b"\xc2"  # begins the characters U+0080 to U+009F in UTF-8, and some others
 _BATCH_LINES = 1 << 16  # the engine's threads take so many at a time; our choice
 _REPLACED = "\ufffd".encode()
 
@@ -71,9 +72,9 @@ def prepare(block: bytes, encoding: str) -> Prepared:
     table = pa.table({"i": np.arange(len(ends), dtype=np.int64), "raw": raw, "bad": bad})
     batches = table.to_batches(max_chunksize=_BATCH_LINES)
     has_return = b"\r" in kept
-    controls = (values < ord(" ")) & (values != _LF) & (values != _TAB) & (values != _CR)
-    has_control = has_return or controls.any() or ((values == _DELETE) | (values == _C1_LEAD)).any()
-    return Prepared(block, len(ends), pa.Table.from_batches(batches), has_return, bool(has_control))
+    allowed = kept.count(b"\n") + kept.count(b"\t")
+    has_control = bool(np.count_nonzero(values < ord(" ")) > allowed) or b"\x7f" in kept or _C1_LEAD in kept
+    return Prepared(block, len(ends), pa.Table.from_batches(batches), has_return, has_return or has_control)
 
 
 def _is_utf8(block: bytes) -> bool:

@@ -121,11 +121,8 @@ def _write(found: Scan, converter: Converter, text: Text, options: ScanOptions, 
 
 def joined(made: Made) -> bytes:
     """Return the made lines as bytes, each with its ending."""
-    import pyarrow.compute as pc
-
-    ended = pc.binary_join_element_wise(made.out, "", "\n")
     pieces = []
-    for chunk in ended.chunks:
+    for chunk in made.out.chunks:
         _, offsets, data = chunk.buffers()
         if data is not None:
             bounds = memoryview(offsets).cast("i")
