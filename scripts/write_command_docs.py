@@ -27,8 +27,8 @@ HEAD = """# Commands
 Written by `scripts/write_command_docs.py` from the commands themselves; a test compares. What the figures
 mean in detail is in [conventions](conventions.md), how they are worked out in [methods](methods.md).
 
-Every command takes files (plain, `.gz`, `.zst`), folders (all files in them, deeper ones too, that end in
-`.log`, `.txt` or `.tsv`, or in these with `.gz` or `.zst`), or `-` for standard input.
+Every command but `simulate` takes files (plain, `.gz`, `.zst`), folders (all files in them, deeper ones too, that
+end in `.log`, `.txt` or `.tsv`, or in these with `.gz` or `.zst`), or `-` for standard input.
 """
 STATUSES = """## Exit statuses
 

@@ -21,6 +21,7 @@ COMMANDS = {
     "between": "Conversations between two other stations.",
     "lines": "The lines behind a figure.",
     "map": "One offline map as an HTML file.",
+    "simulate": "A log with a known truth, from a scenario and a seed.",
     "convert": "Records as the layout, or in open formats for other programs.",
 }
 EXIT_INTERRUPTED = 130
@@ -68,7 +69,7 @@ class _Commands(click.Group):
 def cli() -> None:
     """Turn the text logs of an unattended HF receiver into figures that can be defended.
 
-    Every command takes files (plain, .gz, .zst), folders, or - for standard input.
+    Every command but simulate takes files (plain, .gz, .zst), folders, or - for standard input.
     """
 
 

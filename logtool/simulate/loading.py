@@ -8,6 +8,7 @@ import re
 import tomllib
 from dataclasses import Field, fields, is_dataclass
 from datetime import date, datetime
+from itertools import pairwise
 from pathlib import Path
 from typing import Any, get_type_hints
 
@@ -36,7 +37,7 @@ class Where:
         return ScenarioError(f"{self._name}{f', line {line}' if line else ''}: `{path}`: {message}")
 
     def _line_of(self, table: str, number: int, key: str) -> int | None:
-        starts = [i for i, line in enumerate(self._lines) if re.match(rf"\[+\s*{table}\s*\]", line)]
+        starts = self._headings(table)
         if table and number >= len(starts):
             return None
         begin = starts[number] + 1 if table else 0
@@ -45,7 +46,12 @@ class Where:
                 break
             if re.match(rf"""["']?{re.escape(key)}["']?\s*=""", self._lines[i]):
                 return i + 1
-        return begin or None
+        headings = [] if table else self._headings(key)
+        return headings[0] + 1 if headings else begin or None
+
+    def _headings(self, name: str) -> list[int]:
+        pattern = re.compile(rf"\[+\s*{re.escape(name)}\s*\]")
+        return [i for i, line in enumerate(self._lines) if pattern.match(line)]
 
 
 def load_scenario(path: str | os.PathLike[str]) -> Scenario:
@@ -79,10 +85,10 @@ def scenario_of(text: str, name: str = "scenario") -> Scenario:
     --------
     >>> scenario_of("[senders]\\nnumber = 5").senders.number
     5
-    >>> scenario_of("[senders]\\nnumbr = 5", "my.toml")
+    >>> scenario_of("[air]\\nmod = 5", "my.toml")
     Traceback (most recent call last):
     ...
-    logtool.simulate.scenario.ScenarioError: my.toml, line 2: `senders.numbr`: there is no such key; did you mean `number`?
+    logtool.simulate.scenario.ScenarioError: my.toml, line 2: `air.mod`: there is no such key; did you mean `mode`?
     """
     try:
         told = tomllib.loads(text)
@@ -164,7 +170,9 @@ def _check_whole(scenario: Scenario, where: Where) -> None:
     for key in ("shared_df", "own_df"):
         df = getattr(scenario.fading, key)
         if 0 < df <= LEAST_DF:
-            raise where.error("fading", 0, key, f"with {df:g} the spread is infinite; give over 2, or 0 for normal")
+            raise where.error(
+                "fading", 0, key, f"with {df:g} the spread is infinite; give over 2, or 0 for normal"
+            )
     if not scenario.senders.power_dbm:
         raise where.error("senders", 0, "power_dbm", "it is empty; give one power at least")
     _check_antennas(scenario, where)
@@ -177,14 +185,16 @@ def _check_antennas(scenario: Scenario, where: Where) -> None:
     names: list[str] = []
     for i, antenna in enumerate(scenario.antenna):
         if antenna.name in names or antenna.name == "none":
-            raise where.error("antenna", i, "name", f"{antenna.name!r} is taken; give each antenna another name")
+            raise where.error(
+                "antenna", i, "name", f"{antenna.name!r} is taken; give each antenna another name"
+            )
         names.append(antenna.name)
         for at, gain in (("table_deg", "table_db"), ("distance_km", "distance_db")):
             places, gains = getattr(antenna, at), getattr(antenna, gain)
             if len(places) != len(gains):
                 message = f"it has {len(gains)} values and `{at}` has {len(places)}; give as many"
                 raise where.error("antenna", i, gain, message)
-            if any(b <= a for a, b in zip(places, places[1:], strict=False)):
+            if any(b <= a for a, b in pairwise(places)):
                 raise where.error("antenna", i, at, "it does not rise; sort both lists by it")
         if antenna.table_deg and antenna.table_deg[-1] - antenna.table_deg[0] >= 360:
             raise where.error("antenna", i, "table_deg", "0 and 360 are one bearing; leave one out")
@@ -195,7 +205,9 @@ def _check_receivers(scenario: Scenario, where: Where) -> None:
     known = [antenna.name for antenna in scenario.antenna]
     for i, receiver in enumerate(scenario.receiver):
         if receiver.name in names:
-            raise where.error("receiver", i, "name", f"{receiver.name!r} is taken; give each receiver another name")
+            raise where.error(
+                "receiver", i, "name", f"{receiver.name!r} is taken; give each receiver another name"
+            )
         names.append(receiver.name)
         for name in receiver.antennas:
             if name not in known:
@@ -204,7 +216,9 @@ def _check_receivers(scenario: Scenario, where: Where) -> None:
             if receiver.antennas.count(name) > 1:
                 raise where.error("receiver", i, "antennas", f"{name!r} stands twice; name each once")
         if receiver.lowest_db >= receiver.highest_db:
-            message = f"{receiver.lowest_db} is not below `highest_db`, {receiver.highest_db}; change one of them"
+            message = (
+                f"{receiver.lowest_db} is not below `highest_db`, {receiver.highest_db}; change one of them"
+            )
             raise where.error("receiver", i, "lowest_db", message)
 
 

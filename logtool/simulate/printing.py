@@ -12,7 +12,9 @@ COMMENT_AT = 44  # column of the comments, our choice
 _HEAD = """# A scenario for `logtool simulate`: all keys with their defaults. Keys that are left out have these too.
 # docs/simulate.md says more.
 """
-_FAULTS = "# Any number of faults; remove the signs in front to have this one. Kinds and units of `size`: "
+_FAULTS = """# Any number of faults; remove the signs in front to have this one. `size` is in the unit behind its kind;
+# stops and outages have none.
+"""
 
 
 def default_scenario() -> str:
@@ -22,8 +24,8 @@ def default_scenario() -> str:
     for name, kind in LISTS.items():
         block = f"[[{name}]]  # {_about(kind)} There may be several.\n{_lines(kind)}"
         if name == "fault":
-            kinds = ", ".join(f"{word} ({unit})" for word, unit in FAULT_UNITS.items())
-            block = f"{_FAULTS}\n# {kinds}.\n" + "".join(f"# {line}\n" for line in block.splitlines())
+            kinds = "".join(f"#   {word} ({unit})\n" for word, unit in FAULT_UNITS.items())
+            block = _FAULTS + kinds + "".join(f"# {line}\n" for line in block.splitlines())
         blocks.append(block)
     return "\n".join(blocks)
 

@@ -56,7 +56,9 @@ class Received:
     sure: FloatArray
 
 
-def label_and_late(at_us: IntArray, late_s: FloatArray, clock_s: FloatArray, slot_us: int) -> tuple[IntArray, FloatArray]:
+def label_and_late(
+    at_us: IntArray, late_s: FloatArray, clock_s: FloatArray, slot_us: int
+) -> tuple[IntArray, FloatArray]:
     """Return the slot that a receiver takes a message for, and how late it is after that. [microseconds, s]
 
     A clock that is fast by more than half a slot names another slot.
@@ -104,7 +106,12 @@ def receive(
     fits = (audio_hz >= air.passband_low_hz) & (audio_hz <= air.passband_high_hz)
     fits &= np.abs(late_s) <= air.late_most_s
     missed = timeline.share_missed(sent.at_us)
-    heard = listening & fits & (snr_db + softness > given.threshold_db) & ~_lost(missed, sent, slot_us, which, seed)
+    heard = (
+        listening
+        & fits
+        & (snr_db + softness > given.threshold_db)
+        & ~_lost(missed, sent, slot_us, which, seed)
+    )
     fadings = ((fades.shared_sd_db, fades.shared_df), (given.own_sd_db, fades.own_df))
     margins = np.concatenate((mean_db, planned_db)) - given.threshold_db
     acted, planned = np.split(chance(margins, given.threshold_width_db, fadings), 2)

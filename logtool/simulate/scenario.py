@@ -55,7 +55,7 @@ def _key(
 class Nights:
     """When the receivers listen."""
 
-    first: date = _key(date(2026, 3, 1), "date", "date at the first receiver on which the first night begins")
+    first: date = _key(date(2026, 3, 1), "date", "date on which the first night begins, by mean solar time")  # noqa: RUF009 - a date cannot be changed
     number: int = _key(2, "nights", "nights, one after the other", (1, 400))
     hours: str = _key(
         "sun", "", "`sun`: by the first receiver's sun; `utc`: by the clock", words=("sun", "utc")
@@ -89,7 +89,9 @@ class Path:
     at_1000_km_db: float = _key(-10.0, "dB", "of a sender of 37 dBm at 1000 km", (-200, 200))
     db_per_decade: float = _key(20.0, "dB", "loss for ten times the distance", (-100, 100))
     sender_sd_db: float = _key(6.0, "dB", "spread of the senders (site, aerial), normal", (0, 60))
-    curve_db: float = _key(3.0, "dB", "slow curve of the day: so much at its peak, and under it half a day on", (0, 60))
+    curve_db: float = _key(
+        3.0, "dB", "slow curve of the day: so much at its peak, and under it half a day on", (0, 60)
+    )
     curve_peak_h: float = _key(0.0, "h", "local mean solar time of the peak", (0, 24))
     night_sd_db: float = _key(2.0, "dB", "spread from night to night, all senders alike", (0, 60))
     sender_night_sd_db: float = _key(2.0, "dB", "spread from night to night, each sender of its own", (0, 60))
@@ -115,16 +117,23 @@ class Senders:
     """Who sends, from where, and how often."""
 
     number: int = _key(60, "senders", "how many there are", (1, MOST_SENDERS))
-    locators: tuple[str, ...] = _key((), "", "their places, dealt out in turn; empty: places in the area below")
+    locators: tuple[str, ...] = _key(
+        (), "", "their places, dealt out in turn; empty: places in the area below"
+    )
     near_km: float = _key(300.0, "km", "nearest to the first receiver", (1, 19_000))
     far_km: float = _key(3000.0, "km", "farthest", (1, 19_000))
     bearing_from_deg: float = _key(0.0, "deg", "bearings from here clockwise", (0, 360))
     bearing_to_deg: float = _key(360.0, "deg", "to here", (0, 360))
-    spread: str = _key("distance", "", "evenly over `distance` or over the `area`", words=("distance", "area"))
+    spread: str = _key(
+        "distance", "", "evenly over `distance` or over the `area`", words=("distance", "area")
+    )
     power_dbm: tuple[float, ...] = _key((30.0, 37.0, 40.0, 47.0), "dBm", "powers, drawn evenly", (-30, 70))
     messages_per_hour: float = _key(20.0, "1/h", "sent in a session by the median sender", (0, 36_000))
     activity_tail: float = _key(
-        1.5, "", "exponent of the senders' unequal activity (Pareto; smaller is more unequal); 0 for equal", (0, 100)
+        1.5,
+        "",
+        "exponent of the senders' unequal activity (Pareto; smaller is more unequal); 0 for equal",
+        (0, 100),
     )
     sessions_per_night: float = _key(1.5, "1/night", "mean number of sessions (Poisson)", (0, 100))
     session_min: float = _key(60.0, "min", "mean length of a session (exponential)", (0.1, 1440))
@@ -134,7 +143,9 @@ class Senders:
     with_power: float = _key(0.1, "share", "senders that send their power when they call", (0, 1))
     audio_low_hz: float = _key(300.0, "Hz", "lowest audio frequency", (0, 24_000))
     audio_high_hz: float = _key(2700.0, "Hz", "highest", (0, 24_000))
-    audio_wander_hz: float = _key(0.5, "Hz", "random walk of each sender: standard deviation after an hour", (0, 1000))
+    audio_wander_hz: float = _key(
+        0.5, "Hz", "random walk of each sender: standard deviation after an hour", (0, 1000)
+    )
     audio_jumps: float = _key(0.05, "1/night", "mean number of jumps of a sender's frequency", (0, 100))
     audio_jump_hz: float = _key(100.0, "Hz", "standard deviation of a jump", (0, 10_000))
     late_sd_s: float = _key(0.1, "s", "spread of the senders' clocks, each steady", (0, 10))
@@ -146,12 +157,18 @@ class Antenna:
 
     name: str = _key("wire", "", "its name", form=NAME_FORM)
     gain_db: float = _key(0.0, "dB", "gain for all", (-200, 200))
-    cosine_db: float = _key(0.0, "dB", "adds cosine_db * cos(cosine_lobes * (bearing - cosine_deg))", (-100, 100))
+    cosine_db: float = _key(
+        0.0, "dB", "adds cosine_db * cos(cosine_lobes * (bearing - cosine_deg))", (-100, 100)
+    )
     cosine_deg: float = _key(0.0, "deg", "bearing that the cosine favours", (0, 360))
     cosine_lobes: int = _key(2, "", "its lobes: 2 for an antenna alike to both sides", (1, 36))
-    table_deg: tuple[float, ...] = _key((), "deg", "bearings of a table, rising; between them in proportion", (0, 360))
+    table_deg: tuple[float, ...] = _key(
+        (), "deg", "bearings of a table, rising; between them in proportion", (0, 360)
+    )
     table_db: tuple[float, ...] = _key((), "dB", "gain added at each of them", (-200, 200))
-    distance_km: tuple[float, ...] = _key((), "km", "distances of a table, rising; beyond its ends as at them", (0, 20_100))
+    distance_km: tuple[float, ...] = _key(
+        (), "km", "distances of a table, rising; beyond its ends as at them", (0, 20_100)
+    )
     distance_db: tuple[float, ...] = _key((), "dB", "gain added at each of them", (-200, 200))
     noise_db: float = _key(0.0, "dB", "noise that it brings, against the usual", (-100, 100))
 
@@ -162,7 +179,9 @@ class Receiver:
 
     name: str = _key("hut", "", "its name", form=NAME_FORM)
     locator: str = _key("JO74xa", "", "its place, 4 characters or more")
-    antennas: tuple[str, ...] = _key((), "", "its antennas by name, switched in turn; empty: all of the scenario")
+    antennas: tuple[str, ...] = _key(
+        (), "", "its antennas by name, switched in turn; empty: all of the scenario"
+    )
     order: str = _key(
         "alternate",
         "",
@@ -170,8 +189,12 @@ class Receiver:
         words=("alternate", "random", "nights"),
     )
     block_min: float = _key(30.0, "min", "time on one antenna", (0.5, 1440))
-    threshold_db: float = _key(-20.0, "dB", "half of the messages of this SNR are decoded", (-CERTAIN_DB, CERTAIN_DB))
-    threshold_width_db: float = _key(1.0, "dB", "softness: standard deviation of the threshold (probit)", (0, 60))
+    threshold_db: float = _key(
+        -20.0, "dB", "half of the messages of this SNR are decoded", (-CERTAIN_DB, CERTAIN_DB)
+    )
+    threshold_width_db: float = _key(
+        1.0, "dB", "softness: standard deviation of the threshold (probit)", (0, 60)
+    )
     lowest_db: int = _key(-24, "dB", "lowest SNR that is written", (-60, 80))
     highest_db: int = _key(20, "dB", "highest; SNR is written in whole dB", (-60, 80))
     own_sd_db: float = _key(2.0, "dB", "fading of its own, see `[fading]`", (0, 60))
@@ -181,14 +204,26 @@ class Receiver:
     noise_every_min: float = _key(10.0, "min", "a noise record each so often; 0 for none", (0, 1440))
     watch_s: int = _key(60, "s", "a watch record each so often; 0 for none", (0, 86_400))
     offset_hz: float = _key(0.0, "Hz", "added to all audio frequencies", (-5000, 5000))
-    drift_hz_per_h: float = _key(0.0, "Hz/h", "and grows by so much from the first night's begin on", (-1000, 1000))
+    drift_hz_per_h: float = _key(
+        0.0, "Hz/h", "and grows by so much from the first night's begin on", (-1000, 1000)
+    )
     temperature_c: float = _key(10.0, "deg C", "mean temperature", (-80, 80))
-    temperature_swing_c: float = _key(0.0, "deg C", "so much warmer at 15 h, and colder at 3 h, mean solar time", (0, 60))
-    hz_per_c: float = _key(0.0, "Hz/deg C", "added to the audio frequencies for each degree over the mean", (-1000, 1000))
+    temperature_swing_c: float = _key(
+        0.0, "deg C", "so much warmer at 15 h, and colder at 3 h, mean solar time", (0, 60)
+    )
+    hz_per_c: float = _key(
+        0.0, "Hz/deg C", "added to the audio frequencies for each degree over the mean", (-1000, 1000)
+    )
     clock_s: float = _key(0.0, "s", "its clock is fast by so much", (-86_400, 86_400))
-    clock_drift_s_per_h: float = _key(0.0, "s/h", "and gains so much from the first night's begin on", (-3600, 3600))
-    false_per_hour: float = _key(0.0, "1/h", "false decodes: random call sign and locator, low `sure`", (0, 10_000))
-    bad_per_thousand: float = _key(0.0, "1/1000", "lines that break the layout, each beside a heard line", (0, 1000))
+    clock_drift_s_per_h: float = _key(
+        0.0, "s/h", "and gains so much from the first night's begin on", (-3600, 3600)
+    )
+    false_per_hour: float = _key(
+        0.0, "1/h", "false decodes: random call sign and locator, low `sure`", (0, 10_000)
+    )
+    bad_per_thousand: float = _key(
+        0.0, "1/1000", "lines that break the layout, each beside a heard line", (0, 1000)
+    )
 
 
 @dataclass(frozen=True)
@@ -207,14 +242,18 @@ class Fault:
 class Files:
     """How the lines are spread over files."""
 
-    split: str = _key("night", "", "a log each `night`, each `receiver`, or `one`", words=("night", "receiver", "one"))
+    split: str = _key(
+        "night", "", "a log each `night`, each `receiver`, or `one`", words=("night", "receiver", "one")
+    )
 
 
 @dataclass(frozen=True)
 class Scenario:
     """All that is simulated, given a seed."""
 
-    scenario: int = _key(SCENARIO_VERSION, "", "version of the scenario's keys", (SCENARIO_VERSION, SCENARIO_VERSION))
+    scenario: int = _key(
+        SCENARIO_VERSION, "", "version of the scenario's keys", (SCENARIO_VERSION, SCENARIO_VERSION)
+    )
     about: str = _key("", "", "a remark")
     nights: Nights = field(default_factory=Nights)
     air: Air = field(default_factory=Air)

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from logtool.simulate.cast import Cast
-from logtool.simulate.laws import US_PER_S, BoolArray, FloatArray, IntArray, correlated, correlations, with_tails
+from logtool.simulate.laws import US_PER_S, FloatArray, IntArray, correlated, correlations, with_tails
 from logtool.simulate.scenario import Scenario
 from logtool.simulate.streams import stream
 from logtool.simulate.times import HOUR_US, Night, slots_of
@@ -114,9 +114,10 @@ def _jumps(scenario: Scenario, nights: tuple[Night, ...], seed: int) -> tuple[Ju
         dice = stream(seed, "jumps", number)
         many = dice.poisson(scenario.senders.audio_jumps, scenario.senders.number)
         owner = np.repeat(np.arange(len(many)), many)
-        at_us = night.start_us + np.floor(dice.random(len(owner)) * (night.end_us - night.start_us))
+        seconds = np.floor(dice.random(len(owner)) * (night.end_us - night.start_us) / US_PER_S)
+        at_us = night.start_us + US_PER_S * seconds.astype(np.int64)
         sizes_hz = np.round(scenario.senders.audio_jump_hz * dice.standard_normal(len(owner)), 1)
-        found += [Jump(*one) for one in zip(owner.tolist(), at_us.astype(int).tolist(), sizes_hz.tolist(), strict=True)]
+        found += [Jump(*one) for one in zip(owner.tolist(), at_us.tolist(), sizes_hz.tolist(), strict=True)]
     return tuple(sorted(found, key=lambda jump: (jump.sender, jump.at_us)))
 
 
@@ -141,10 +142,12 @@ def _audio_hz(
         walked[order] = sums - np.repeat(sums[first], np.diff(np.append(first, len(own))))
     for jump in jumps:
         walked[(sender == jump.sender) & (at_us >= jump.at_us)] += jump.size_hz
-    return cast.audio_hz[sender] + walked
+    return np.asarray(cast.audio_hz[sender] + walked)
 
 
-def mean_levels_db(scenario: Scenario, cast: Cast, sent: Sent, lon_deg: float, receiver: int, seed: int) -> FloatArray:
+def mean_levels_db(
+    scenario: Scenario, cast: Cast, sent: Sent, lon_deg: float, receiver: int, seed: int
+) -> FloatArray:
     """Return each transmission's SNR at a receiver's site without fading, gain and unusual noise. [dB]
 
     The sender's level, the loss by distance, the curve of the day, and the night's luck.
@@ -157,7 +160,7 @@ def mean_levels_db(scenario: Scenario, cast: Cast, sent: Sent, lon_deg: float, r
     steady = cast.level_db - path.db_per_decade * far
     sun_h = sent.at_us / HOUR_US + lon_deg / 15.0
     curve = path.curve_db * np.cos(2.0 * np.pi * (sun_h - path.curve_peak_h) / 24.0)
-    return steady[sent.sender] + luck[sent.night, sent.sender] + curve
+    return np.asarray(steady[sent.sender] + luck[sent.night, sent.sender] + curve)
 
 
 def fading(

@@ -1,4 +1,4 @@
-"""One receiver through the nights: when it listens, its antenna, noise, oscillator and clock, with all that goes wrong."""
+"""One receiver through the nights: listening, antenna, noise, oscillator and clock, and what goes wrong."""
 
 from __future__ import annotations
 
@@ -10,7 +10,7 @@ import numpy as np
 from logtool.places.locator import centre
 from logtool.simulate.antennas import blocks, in_use
 from logtool.simulate.laws import BoolArray, FloatArray, IntArray, power_sum_db
-from logtool.simulate.scenario import STEPS, Antenna, Fault, Receiver, Scenario
+from logtool.simulate.scenario import STEPS, Antenna, Fault, Receiver, Scenario, ScenarioError
 from logtool.simulate.times import HOUR_US, MINUTE_US, Night
 
 WARMEST_H = 15.0
@@ -46,10 +46,17 @@ class Timeline:
         )
 
     def _plant(self, fault: Fault) -> Planted:
+        """Steps stay to the end, all else ends with its night at the latest."""
         night = self.nights[fault.night - 1]
         from_us = night.start_us + round(fault.at_min * MINUTE_US)
-        to_us = self.nights[-1].end_us if fault.kind in STEPS else from_us + round(fault.minutes * MINUTE_US)
-        return Planted(fault, from_us, to_us)
+        if from_us >= night.end_us:
+            lasts_min = (night.end_us - night.start_us) // MINUTE_US
+            raise ScenarioError(
+                f"[[fault]] {fault.kind}: at_min = {fault.at_min:g} is after the night of {night.day}, "
+                f"which lasts {lasts_min} min; give less"
+            )
+        end_us = min(from_us + round(fault.minutes * MINUTE_US), night.end_us)
+        return Planted(fault, from_us, self.nights[-1].end_us if fault.kind in STEPS else end_us)
 
     def _of(self, *kinds: str) -> list[Planted]:
         return [one for one in self.planted if one.fault.kind in kinds]

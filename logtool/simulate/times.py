@@ -37,14 +37,16 @@ def nights_of(scenario: Scenario) -> tuple[Night, ...]:
         Where the sun neither sets nor rises, or a night has no length or runs into the next.
     """
     given = scenario.nights
-    nights = []
+    nights: list[Night] = []
     for number in range(given.number):
         day = given.first + timedelta(days=number)
         start_us, end_us = _by_sun(scenario, day) if given.hours == "sun" else _by_clock(scenario, day)
         if end_us <= start_us:
             raise ScenarioError(f"[nights]: the night of {day} has no length; change its hours")
         if nights and start_us < nights[-1].end_us:
-            raise ScenarioError(f"[nights]: the night of {day} begins before the one before ends; shorten them")
+            raise ScenarioError(
+                f"[nights]: the night of {day} begins before the one before ends; shorten them"
+            )
         nights.append(Night(day, start_us, end_us))
     return tuple(nights)
 
@@ -88,9 +90,12 @@ def written_times(at_us: IntArray) -> list[str]:
     >>> written_times(np.array([0, 1_500_000]))
     ['1970-01-01T00:00:00.000Z', '1970-01-01T00:00:01.500Z']
     """
-    unit = "s" if not np.any(at_us % US_PER_S) else "ms" if not np.any(at_us % US_PER_MS) else "us"
     instants = np.asarray(at_us, dtype=np.int64).view("datetime64[us]")
-    return [f"{text}Z" for text in np.datetime_as_string(instants, unit=unit).tolist()]
+    if not np.any(at_us % US_PER_S):
+        instants = instants.astype("datetime64[s]")
+    elif not np.any(at_us % US_PER_MS):
+        instants = instants.astype("datetime64[ms]")
+    return [f"{text}Z" for text in np.datetime_as_string(instants).tolist()]
 
 
 def written_time(at_us: int) -> str:

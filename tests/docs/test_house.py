@@ -13,7 +13,10 @@ from tests.docs.running import ROOT
 
 HOUSE = ROOT / "logtool"
 GUIDE = (ROOT / "DEVELOPERS.md").read_text(encoding="utf-8")
-ROOMS = ["records", "suggest", "places", "tables", "exports", "pages", "cli"]
+ROOMS = ["records", "suggest", "places", "simulate", "tables", "verdicts", "exports", "pages", "cli"]
+# What proves the others shares no code with them: it imports these rooms only, and only the commands import it.
+APART = {"simulate": {"places"}}
+USERS_OF_APART = {"cli"}
 HEAVY = {"pandas", "folium", "branca", "jinja2", "rich", "pyproj", "duckdb", "zstandard", "pyarrow"}
 MODULES = sorted(HOUSE.rglob("*.py"))
 
@@ -58,6 +61,17 @@ def test_imports_go_one_way(path: Path) -> None:
     for name in imports(ast.parse(path.read_text(encoding="utf-8"))):
         room = room_of(name)
         assert room is None or ROOMS.index(room) <= ROOMS.index(own), f"{path.name} imports {name}"
+
+
+@pytest.mark.parametrize("path", MODULES, ids=lambda path: str(path.relative_to(HOUSE)))
+def test_rooms_apart_share_no_code(path: Path) -> None:
+    own = path.relative_to(HOUSE).parts[0]
+    for name in imports(ast.parse(path.read_text(encoding="utf-8"))):
+        room = room_of(name)
+        if own in APART:
+            assert room is None or room in APART[own] | {own}, f"{path.name} imports {name}"
+        elif own not in USERS_OF_APART:
+            assert room not in APART, f"{path.name} imports {name}"
 
 
 @pytest.mark.parametrize("path", MODULES, ids=lambda path: str(path.relative_to(HOUSE)))

@@ -5,7 +5,7 @@ from __future__ import annotations
 import difflib
 import re
 
-from logtool.records.layout import NUMBER_FORM
+from logtool.records.layout import LOCATOR_FORM, NAME_FORM, NUMBER_FORM, SETUP_LOCATOR_CHARACTERS
 from logtool.records.recipes.fields import Fields
 from logtool.records.recipes.names import NUMBER_TARGETS, PIECES, target_of
 from logtool.records.recipes.values import constant_value
@@ -42,8 +42,18 @@ def constants_of(fields: Fields, keep: tuple[str, ...]) -> dict[str, str]:
         if target_of(name) in NUMBER_TARGETS and not _is_number(constant_value(name, value)[1]):
             raise fields.error(name, f"{value!r} is no number that can be used")
         check_clean(fields, name, value)
+        _check_form(fields, name, value)
         constants[name] = value
     return constants
+
+
+def _check_form(fields: Fields, name: str, value: str) -> None:
+    """Stop at a name or a place that no record can hold: a setup with it would be lost."""
+    if name in ("receiver", "antenna") and not re.fullmatch(NAME_FORM, value):
+        raise fields.error(name, f"{value!r} is no name: write 1 to 32 of the characters A-Z a-z 0-9 _ -")
+    is_place = re.fullmatch(LOCATOR_FORM, value) and len(value) >= SETUP_LOCATOR_CHARACTERS
+    if name == "place" and not is_place:
+        raise fields.error(name, f"{value!r} is no locator of 4, 6, 8 or 10 characters, like JN58td")
 
 
 def _is_number(text: str) -> bool:

@@ -53,7 +53,11 @@ def try_lines(recipe: Recipe, source: Source, limit: int, *, day_us: int | None 
     """
     from logtool.records.engine import connect
 
-    block = next(blocks_of(Text(source, limit=None), recipe.encoding, joined_bytes=0), b"")
+    block = b""
+    for piece in blocks_of(Text(source, limit=None), recipe.encoding, joined_bytes=0):
+        block += piece
+        if block.count(b"\n") >= limit:
+            break
     kept = list(islice(block.split(b"\n"), limit))
     if block.count(b"\n") < limit and kept and not kept[-1]:
         kept.pop()
