@@ -92,9 +92,18 @@ def look_at(path: str | os.PathLike[str]) -> Look:
         name,
         encoding,
         tuple(lines),
-        "" if lines else "the file has no line with anything on it",
+        "" if lines else _why_no_line(parts),
         doubts,
         whole,
+    )
+
+
+def _why_no_line(parts: list[bytes]) -> str:
+    if not b"".join(parts).strip(b" \t\r\n\x00"):
+        return "the file has no line with anything on it"
+    return (
+        f"its lines have over {LONGEST_CHARACTERS} characters each, so it is no log; if they end at a carriage return"
+        " alone, convert the file first"
     )
 
 
