@@ -48,6 +48,10 @@ class _Commands(click.Group):
             raise _InterruptedError from error
         except BrokenPipeError as error:
             raise _PipeClosedError from error
+        except Exception as error:
+            if _is_interrupt(error):
+                raise _InterruptedError from error
+            raise
         return status
 
     def list_commands(self, ctx: click.Context) -> list[str]:
@@ -62,6 +66,11 @@ class _Commands(click.Group):
     def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
         with formatter.section("Commands"):
             formatter.write_dl(list(COMMANDS.items()))
+
+
+def _is_interrupt(error: Exception) -> bool:
+    """Return whether an error is how the engine tells of Ctrl-C during a query."""
+    return type(error).__name__ == "InterruptException" or str(error).startswith("Query interrupted")
 
 
 @click.group(cls=_Commands, context_settings={"help_option_names": ["-h", "--help"]})

@@ -92,6 +92,8 @@ def _spare_inputs(logs: Logs, words: dict[str, Any]) -> None:
     for output, place in zip(outputs, real, strict=True):
         if place in inputs:
             raise UsageError(f"{output} is one of the logs; name another file to write to")
+        if words.get("recipe") is not None and place == os.path.realpath(words["recipe"]):
+            raise UsageError(f"{output} is the recipe; name another file to write to")
     if len(set(real)) < len(real):
         raise UsageError(f"--out and --set-aside both name {outputs[0]}; name two files")
 
@@ -118,7 +120,9 @@ def status_of(logs: Logs, *, quiet: bool, notes: list[str]) -> int:
         return EXIT_UNREAD
     if not any(file.records for file in logs.inputs):
         click.echo(
-            "logtool: the inputs hold no record; `logtool check` shows what became of each line", err=True
+            "logtool: the inputs hold no record; `logtool check` shows what became of each line, and for another "
+            "program's text `logtool convert --suggest FILE` writes a first recipe",
+            err=True,
         )
         return EXIT_NO_RECORD
     return 0

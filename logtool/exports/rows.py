@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import TYPE_CHECKING, Any
 
+from logtool.records.in_order import pieces_in_order
 from logtool.tables.result import written_time
 
 if TYPE_CHECKING:
@@ -14,10 +15,11 @@ BLOCK_ROWS = 10_000  # held at a time; our choice
 
 
 def blocks(logs: Logs, query: str) -> Iterator[list[tuple[Any, ...]]]:
-    """Give the rows of a query; the logs must not be asked for anything else meanwhile."""
-    cursor = logs.connection.execute(query)
-    while rows := cursor.fetchmany(BLOCK_ROWS):
-        yield rows
+    """Give the rows of a query in order; the logs must not be asked for anything else meanwhile."""
+    for piece in pieces_in_order(logs.connection, query):
+        cursor = logs.connection.execute(piece)
+        while rows := cursor.fetchmany(BLOCK_ROWS):
+            yield rows
 
 
 class Times(dict[int, str]):

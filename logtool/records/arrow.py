@@ -6,6 +6,7 @@ from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
 from logtool.records.each import LAYOUT_COLUMNS, fields_sql, receptions_sql, shown_sql, typed_sql
+from logtool.records.in_order import ORDER, pieces_in_order
 
 if TYPE_CHECKING:
     import duckdb
@@ -39,18 +40,19 @@ def schema_of(columns: dict[str, str], metadata: dict[str, str] | None = None) -
 
 
 def batches(connection: duckdb.DuckDBPyConnection, query: str, schema: pa.Schema) -> Iterator[pa.RecordBatch]:
-    """Give the rows of a query in batches of `BATCH_ROWS` (the last has fewer), however the engine gives them.
+    """Give the rows of a query in batches of `BATCH_ROWS` (the last has fewer), in the order of `pieces_in_order`.
 
     The connection must not be used for anything else meanwhile.
     """
     import pyarrow as pa
 
     waiting = schema.empty_table()
-    for batch in connection.sql(query).to_arrow_reader(BATCH_ROWS):
-        waiting = pa.concat_tables([waiting, pa.Table.from_batches([batch]).cast(schema)])
-        while waiting.num_rows >= BATCH_ROWS:
-            yield from waiting.slice(0, BATCH_ROWS).combine_chunks().to_batches()
-            waiting = waiting.slice(BATCH_ROWS)
+    for piece in pieces_in_order(connection, query):
+        for batch in connection.sql(piece).to_arrow_reader(BATCH_ROWS):
+            waiting = pa.concat_tables([waiting, pa.Table.from_batches([batch]).cast(schema)])
+            while waiting.num_rows >= BATCH_ROWS:
+                yield from waiting.slice(0, BATCH_ROWS).combine_chunks().to_batches()
+                waiting = waiting.slice(BATCH_ROWS)
     yield from waiting.combine_chunks().to_batches()
 
 
@@ -76,6 +78,6 @@ def records_arrow(logs: Logs) -> pa.Table:
     logs.tally()
     lines = f"(SELECT line FROM {receptions_sql(logs)} UNION ALL SELECT line FROM odd_records)"
     columns = ", ".join(f"{typed_sql(name)} AS {name}" for name in LAYOUT_COLUMNS)
-    query = f"SELECT {columns} FROM {shown_sql(logs, fields_sql(lines))} ORDER BY time_us, raw"
+    query = f"SELECT {ORDER}, {columns} FROM {shown_sql(logs, fields_sql(lines))}"
     schema = schema_of(LAYOUT_COLUMNS)
     return pa.Table.from_batches(batches(logs.connection, query, schema), schema)

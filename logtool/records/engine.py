@@ -31,7 +31,9 @@ def connect(work: Path, threads: int | None, memory_mb: int) -> duckdb.DuckDBPyC
     }
     if threads is not None:
         config["threads"] = threads
-    return duckdb.connect(":memory:", config=config)
+    connection = duckdb.connect(":memory:", config=config)
+    connection.execute("SET enable_progress_bar_print = false")  # how far it is is told in our own way
+    return connection
 
 
 def lines_sql(paths: list[Path]) -> str:

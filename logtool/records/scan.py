@@ -320,6 +320,6 @@ class _Stranger:
         reason, count = self.reasons.most_common(1)[0]
         return (
             f"none of its first {STRANGER_LINES} lines is a record ({count} are {reason}; "
-            f"the first is {self.shown!r}): it does not follow the log layout. Convert it first "
-            "(docs/log-layout.md), or read it with --anyway"
+            f"the first is {self.shown!r}): it does not follow the log layout. A recipe reads "
+            "other programs' text: `logtool convert --suggest FILE` writes a first one; or read it with --anyway"
         )

@@ -53,7 +53,7 @@ def _whole(path: str | os.PathLike[str], mode: str, **text: Any) -> Iterator[IO[
                 yield file
                 file.flush()
                 os.fsync(file.fileno())
-            os.chmod(name, 0o666 & ~_umask())
+            os.chmod(name, place.stat().st_mode & 0o777 if place.exists() else 0o666 & ~_umask())
             os.replace(name, place)
         except BaseException:
             Path(name).unlink(missing_ok=True)

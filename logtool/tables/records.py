@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from logtool.records.each import LAYOUT_COLUMNS, fields_sql, shown_sql, typed_sql, written_sql
 from logtool.records.engine import among, create_table
+from logtool.records.in_order import ORDER
 from logtool.records.judge import Record, judge
 from logtool.records.layout import COLUMN_NAMES
 from logtool.records.tally import FIELD, HOUR_US, SPLIT
@@ -41,7 +42,7 @@ RECORD_COLUMNS = LAYOUT_COLUMNS | DERIVED_COLUMNS
 def records_query(
     logs: Logs, choice: Choice, columns: Sequence[str] = tuple(RECORD_COLUMNS), *, with_setups: bool = False
 ) -> str:
-    """Return the SQL query of all records that a choice counts, each once, in order of time, then of bytes.
+    """Return the SQL query of all records that a choice counts, each once, for `pieces_in_order`.
 
     Times are in microseconds since 1970. A choice by sender or mode leaves receptions only. Records of other
     kinds are chosen by the receiver and antenna in force and by the night of their hour; a band leaves out
@@ -70,10 +71,10 @@ def records_query(
 
 
 def _query(logs: Logs, records: str, columns: Sequence[str]) -> str:
-    """Return the query of columns of a relation of records, in order."""
+    """Return the query of columns of a relation of records, for `pieces_in_order`."""
     typed = {name: typed_sql(name) for name in LAYOUT_COLUMNS}
     listed = ", ".join(f"{typed.get(name, name)} AS {name}" for name in columns)
-    return f"SELECT {listed} FROM {shown_sql(logs, records)} ORDER BY time_us, raw"
+    return f"SELECT {ORDER}, {listed} FROM {shown_sql(logs, records)}"
 
 
 def _with_places(logs: Logs, receptions: str, *, rounded: bool) -> str:

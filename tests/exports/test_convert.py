@@ -93,7 +93,7 @@ def test_endings(tmp_path: Path, log: Path) -> None:
     empty.write_text("# nothing\n")
     done = call("convert", empty, "--to", "csv")
     assert done.returncode == 1
-    assert done.stdout.count("\n") == 1
+    assert not done.stdout
     done = call("convert", log, tmp_path / "none.log", "--to", "csv")
     assert done.returncode == 3
     assert "none.log" in done.stderr
