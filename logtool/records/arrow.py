@@ -51,9 +51,21 @@ def batches(connection: duckdb.DuckDBPyConnection, query: str, schema: pa.Schema
         for batch in connection.sql(piece).to_arrow_reader(BATCH_ROWS):
             waiting = pa.concat_tables([waiting, pa.Table.from_batches([batch]).cast(schema)])
             while waiting.num_rows >= BATCH_ROWS:
-                yield from waiting.slice(0, BATCH_ROWS).combine_chunks().to_batches()
+                yield _alone(waiting.slice(0, BATCH_ROWS))
                 waiting = waiting.slice(BATCH_ROWS)
-    yield from waiting.combine_chunks().to_batches()
+    if waiting.num_rows:
+        yield _alone(waiting)
+
+
+def _alone(rows: pa.Table) -> pa.RecordBatch:
+    """Return rows as one batch whose buffers hold nothing else, so that the same rows are the same bytes.
+
+    What the engine leaves where a value is missing is whatever was there before.
+    """
+    import numpy as np
+
+    (batch,) = rows.take(np.arange(rows.num_rows)).combine_chunks().to_batches()
+    return batch
 
 
 def records_arrow(logs: Logs) -> pa.Table:

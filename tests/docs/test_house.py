@@ -17,7 +17,7 @@ ROOMS = ["records", "suggest", "places", "simulate", "tables", "verdicts", "expo
 # What proves the others shares no code with them: it imports these rooms only, and only the commands import it.
 APART = {"simulate": {"places"}}
 USERS_OF_APART = {"cli"}
-HEAVY = {"pandas", "folium", "branca", "jinja2", "rich", "pyproj", "duckdb", "zstandard", "pyarrow"}
+HEAVY = {"pandas", "folium", "branca", "jinja2", "rich", "pyproj", "duckdb", "zstandard", "pyarrow", "scipy"}
 MODULES = sorted(HOUSE.rglob("*.py"))
 
 

@@ -25,6 +25,10 @@ class Piece(NamedTuple):
     by_log_width: Floats
 
 
+def _floats(values: ArrayLike) -> Floats:
+    return np.asarray(values, dtype=float)
+
+
 def hazard(z: ArrayLike) -> Floats:
     """Return the standard normal density over the probability below: the slope of log P(Z < z).
 
@@ -45,15 +49,20 @@ def hazard(z: ArrayLike) -> Floats:
     >>> round(float(hazard(0.0)), 6)
     0.797885
     """
+    return _log_below(_floats(z))[1]
+
+
+def _log_below(z: Floats) -> tuple[Floats, Floats]:
+    """Return log P(Z < z) of a standard normal value and its slope."""
     from scipy.special import log_ndtr
 
-    limit = np.asarray(z, dtype=float)
-    return np.asarray(np.exp(-0.5 * limit**2 - HALF_LOG_2PI - log_ndtr(limit)))
+    log_chance = log_ndtr(z)
+    return log_chance, np.exp(-0.5 * z**2 - HALF_LOG_2PI - log_chance)
 
 
 def seen(value: ArrayLike, mean: ArrayLike, sd: float) -> Piece:
     """Return the piece of values that are known."""
-    z = (np.asarray(value, dtype=float) - mean) / sd
+    z = (_floats(value) - _floats(mean)) / sd
     return Piece(-0.5 * z**2 - HALF_LOG_2PI - np.log(sd), z / sd, z**2 - 1, np.zeros_like(z))
 
 
@@ -86,29 +95,27 @@ def below(limit: ArrayLike, mean: ArrayLike, sd: float, width: ArrayLike = 0.0) 
     ----------
     J. Tobin, Econometrica 26 (1958) 24-36, doi:10.2307/1907382 (from memory).
     """
-    from scipy.special import log_ndtr
-
-    whole = np.hypot(sd, width)
-    z = (np.asarray(limit, dtype=float) - mean) / whole
-    slope = hazard(z)
+    soft = _floats(width)
+    whole = np.hypot(sd, soft)
+    z = (_floats(limit) - _floats(mean)) / whole
+    log_chance, slope = _log_below(z)
     return Piece(
-        np.asarray(log_ndtr(z)),
+        log_chance,
         -slope / whole,
         -slope * z * (sd / whole) ** 2,
-        -slope * z * (np.asarray(width, dtype=float) / whole) ** 2,
+        -slope * z * (soft / whole) ** 2,
     )
 
 
 def above(limit: ArrayLike, mean: ArrayLike, sd: float) -> Piece:
     """Return the piece of values that are only known to lie above a limit, as where a scale ends."""
-    turned = below(-np.asarray(limit, dtype=float), -np.asarray(mean, dtype=float), sd)
+    turned = below(-_floats(limit), -_floats(mean), sd)
     return turned._replace(by_mean=-turned.by_mean)
 
 
 def decoded(value: ArrayLike, centre: ArrayLike, width: ArrayLike) -> Piece:
     """Return the piece of values that were decoded although the threshold is soft; its mean is the centre."""
-    from scipy.special import log_ndtr
-
-    z = (np.asarray(value, dtype=float) - centre) / width
-    slope = hazard(z)
-    return Piece(np.asarray(log_ndtr(z)), -slope / np.asarray(width), np.zeros_like(z), -slope * z)
+    soft = _floats(width)
+    z = (_floats(value) - _floats(centre)) / soft
+    log_chance, slope = _log_below(z)
+    return Piece(log_chance, -slope / soft, np.zeros_like(z), -slope * z)

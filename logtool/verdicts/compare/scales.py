@@ -8,7 +8,7 @@ import numpy as np
 
 from logtool.verdicts.compare.transmissions import Floats
 
-PILED_SHARE = 0.02  # equal values at an extreme, of all that a side decoded; design, section 5
+PILED_SHARE = 0.02  # equal values at an extreme, of all that a side decoded; our choice
 FEWEST_PILED = 5  # fewer are no pile; our choice
 
 

@@ -56,6 +56,9 @@ class Transmissions:
         Number of the sender of each transmission, from 0.
     this_db, that_db : array, shape (n,)
         SNR by either side, NaN where that side did not decode it.
+    spell : array of int, shape (n,), optional
+        Number of the spell of time of each transmission, from 0: a night or a few hours, in which a side's noise
+        may be unlike that of another. Without it the interval speaks of times like these only.
 
     Raises
     ------
@@ -66,18 +69,20 @@ class Transmissions:
     sender: Counts
     this_db: Floats
     that_db: Floats
+    spell: Counts | None = None
 
     def __post_init__(self) -> None:
-        if not len(self.sender) == len(self.this_db) == len(self.that_db):
+        lengths = {len(column) for column in (self.sender, self.this_db, self.that_db)}
+        if self.spell is not None:
+            lengths.add(len(self.spell))
+        if len(lengths) > 1:
             raise UsageError(
-                f"transmissions: {len(self.sender)} senders, {len(self.this_db)} SNR by this, "
-                f"{len(self.that_db)} by that; give columns of one length"
+                f"transmissions: columns of {' and '.join(map(str, sorted(lengths)))} rows; "
+                "give columns of one length"
             )
         unheard = np.flatnonzero(np.isnan(self.this_db) & np.isnan(self.that_db))
         if unheard.size:
-            raise UsageError(
-                f"transmissions, row {unheard[0]}: neither side decoded it; leave such rows out"
-            )
+            raise UsageError(f"transmissions, row {unheard[0]}: neither side decoded it; leave such rows out")
 
     def __len__(self) -> int:
         return len(self.sender)
@@ -104,7 +109,7 @@ class Transmissions:
 
     def summed(self, values: Floats) -> Floats:
         """Return the sum of a column over each sender's transmissions."""
-        return np.bincount(self.sender, values, minlength=len(self.per_sender))
+        return np.bincount(self.sender, values, minlength=len(self.per_sender)).astype(float)
 
 
 def capped_weights(sender: Counts, per_sender: Counts) -> Floats:

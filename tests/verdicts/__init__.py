@@ -1,0 +1,1 @@
+"""The verdicts: what may be said, and how surely."""
