@@ -69,6 +69,7 @@ LEDGER_KEYS = {
     "repeated": "lines equal to an earlier record's",
     "set_aside": "lines that break the layout",
     "reasons": "how many were set aside for which reason",
+    "rules": "only with `--recipe`: how many lines each rule of it held for; with the blank ones they are all",
 }
 STATION = {
     "receiver": "receiver's name; `NAME@LOCATOR` where it stood at places over 10 km apart",

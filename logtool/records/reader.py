@@ -19,6 +19,7 @@ from logtool.records.privacy import Privacy
 from logtool.records.progress import LOOK_SHARE, RECIPE_SHARE, Polled, Progress
 from logtool.records.recipes.recipe import RecipeError
 from logtool.records.scan import LEAST_MEMORY_MB, EndlessLineError, Scan, ScanOptions, scan
+from logtool.records.setups import setups_of
 from logtool.records.sources import STDIN, Source, UnreadableError, sources_of
 from logtool.records.tally import BLANK, COMMENT, HOUR_US, Cuts, Odd, Repeats, create_tally, drop_repeated
 
@@ -30,18 +31,6 @@ if TYPE_CHECKING:
     from logtool.records.recipes.recipe import Recipe
 
 MEMORY_SHARE = 0.8  # of the text's size, above that
-
-
-@dataclass(frozen=True)
-class Setup:
-    """A setup in force from `time_us` on: where the receiver stands, its antenna and its dial."""
-
-    receiver: str
-    time_us: int
-    locator: str
-    antenna: str
-    dial_hz: int
-    more: str  # its details as written
 
 
 @dataclass(frozen=True)
@@ -97,7 +86,7 @@ class Logs:
         self.notes: list[str] = []
         try:
             self._scans = self._look_over(paths)
-            self.setups = _setups(self._scans)
+            self.setups = setups_of(self._scans)
         except BaseException:
             self.close()
             raise
@@ -302,7 +291,7 @@ class Logs:
             path = self._path_of(i, "-as-seen")
             self._scans[i] = scan(seen.source, path, options, only_bytes=seen.stored_bytes)
         if changed:
-            self.setups = _setups(self._scans)
+            self.setups = setups_of(self._scans)
         return bool(changed)
 
     def _make_tally_as_seen(self, bounds: frozenset[int]) -> None:
@@ -380,26 +369,3 @@ def _has_changed(seen: Scan) -> bool:
         return seen.path.stat().st_size != seen.stored_bytes
     except OSError:  # it is gone; to copy it will say so
         return True
-
-
-def _setups(scans: list[Scan]) -> dict[str, list[Setup]]:
-    latest: dict[tuple[str, int], Setup] = {}
-    known: set[tuple[str, ...]] = set()  # a repeated line is no later setup
-    for seen in scans:
-        for _, record in seen.setups:
-            if record.fields in known:
-                continue
-            known.add(record.fields)
-            receiver = record.field("receiver")
-            latest[receiver, record.time_us] = Setup(
-                receiver,
-                record.time_us,
-                record.field("locator"),
-                record.keys["antenna"],
-                int(record.field("dial_hz")),
-                record.field("more"),
-            )
-    setups: dict[str, list[Setup]] = {}
-    for key in sorted(latest):
-        setups.setdefault(key[0], []).append(latest[key])
-    return setups

@@ -13,7 +13,7 @@ from logtool.simulate.laws import BoolArray, FloatArray
 from logtool.simulate.scenario import Scenario
 from logtool.simulate.streams import stream
 
-USUAL_DBM, USUAL_KM = 37.0, 1000.0
+USUAL_DBM = 37.0
 PLACE_CHARACTERS = 6
 FALSE_CHARACTERS = 4
 _LETTERS = len(ascii_uppercase)

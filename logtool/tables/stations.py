@@ -12,7 +12,8 @@ from logtool.places.locator import centre, written
 
 if TYPE_CHECKING:
     from logtool.records.privacy import Privacy
-    from logtool.records.reader import Logs, Setup
+    from logtool.records.reader import Logs
+    from logtool.records.setups import Setup
 
 APART_KM = 10.0  # places farther apart are different receivers; design, section 4
 BEFORE_ALL_US = -(2**62)

@@ -45,7 +45,11 @@ def test_frame_has_the_keys_named(writer: ModuleType) -> None:
     told = json.loads(logtool("reach", "sample_logs", "--json", "--band", "1m").stdout)
     told |= json.loads(logtool("check", "sample_logs", "--json").stdout)
     assert set(told) == set(writer.FRAME_KEYS)
-    assert all(list(ledger) == list(writer.LEDGER_KEYS) for ledger in told["inputs"])
+    assert all([*ledger, "rules"] == list(writer.LEDGER_KEYS) for ledger in told["inputs"])
+    by_recipe = ("check", "docs/recipes/blanks.txt", "--recipe", "docs/recipes/blanks.toml", "--json")
+    (ledger,) = json.loads(logtool(*by_recipe).stdout)["inputs"]
+    assert list(ledger) == list(writer.LEDGER_KEYS)
+    assert ledger["lines"] == ledger["blank"] + sum(ledger["rules"].values())
     for ledger in told["inputs"]:
         parts = ("blank", "comments", "records", "repeated", "set_aside")
         assert ledger["lines"] == sum(ledger[part] for part in parts)
