@@ -96,7 +96,9 @@ def read_alike(log: Path, text: Path, recipe: Path) -> None:
         for words in commands
     ]
     if rows[0] != rows[1]:
-        raise SystemExit("the text by its recipe gives other rows than the log: they are not the same records")
+        raise SystemExit(
+            "the text by its recipe gives other rows than the log: they are not the same records"
+        )
 
 
 def main() -> None:
@@ -124,7 +126,9 @@ def main() -> None:
         pair("logtool reach, ten million lines", [*reach, str(many)], f"bare {name}", [*command, str(many)])
     for log in (week, many):
         by_recipe = [*reach, "--recipe", str(recipe), str(texts[log])]
-        pair(f"logtool reach, {log.stem} by a recipe", by_recipe, "the same in the layout", [*reach, str(log)])
+        pair(
+            f"logtool reach, {log.stem} by a recipe", by_recipe, "the same in the layout", [*reach, str(log)]
+        )
     pair("logtool reach, 1 % bad lines", [*reach, str(dirty)], "logtool reach, clean", [*reach, str(many)])
 
 
