@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 import pty
+import signal
 import subprocess
 import sys
 from pathlib import Path
@@ -20,6 +21,11 @@ def call(*words: str | os.PathLike[str], **more: Any) -> subprocess.CompletedPro
     return subprocess.run(
         [*COMMAND, *given], capture_output=True, text=True, cwd=more.pop("cwd", ROOT), timeout=120, **more
     )
+
+
+def heeding_interrupts() -> None:
+    """Let a process that starts heed Ctrl-C, which one that runs in a shell's background does not."""
+    signal.signal(signal.SIGINT, signal.SIG_DFL)
 
 
 def call_on_terminal(*words: str | os.PathLike[str], columns: int = 100) -> str:

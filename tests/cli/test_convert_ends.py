@@ -11,7 +11,7 @@ from pathlib import Path
 import pytest
 
 from tests.benchmarks.make_log import make_log
-from tests.cli.calling import COMMAND, HEADER, ROOT, call, heard
+from tests.cli.calling import COMMAND, HEADER, ROOT, call, heard, heeding_interrupts
 
 RECIPE = """recipe = 1
 [constants]
@@ -105,6 +105,7 @@ def test_ctrl_c_in_a_query_ends_with_130_and_the_old_file(tmp_path: Path) -> Non
             stderr=subprocess.PIPE,
             text=True,
             cwd=ROOT,
+            preexec_fn=heeding_interrupts,
         )
         time.sleep(wait_s)
         process.send_signal(signal.SIGINT)

@@ -12,7 +12,7 @@ from pathlib import Path
 
 import pytest
 
-from tests.cli.calling import COMMAND, HEADER, ROOT, call, heard, setup
+from tests.cli.calling import COMMAND, HEADER, ROOT, call, heard, heeding_interrupts, setup
 
 GOOD = HEADER + setup("2026-03-01T22:00:00Z") + heard("2026-03-01T22:01:00Z", locator="JN58")
 
@@ -171,6 +171,7 @@ def test_an_interrupt_ends_with_130_and_leaves_nothing(tmp_path: Path) -> None:
         text=True,
         cwd=ROOT,
         env={**os.environ, "TMPDIR": str(temporary)},
+        preexec_fn=heeding_interrupts,
     )
     limit = time.monotonic() + 20
     while not any(temporary.iterdir()) and time.monotonic() < limit:
