@@ -10,6 +10,7 @@ RECIPE_VERSION = 1
 CARRY, SKIP = "carry", "skip"
 HEADER_RULE = "header"  # the name, in the ledger, of lines that name the columns
 NO_RULE, NO_DATE, BAD_TIME, BAD_ENCODING = "no-rule", "no-date", "bad-time", "bad-encoding"
+REASONS = (NO_RULE, NO_DATE, BAD_TIME, BAD_ENCODING, "control-character", "too-long")
 SPACE = "space"  # the separator that stands for runs of blanks
 MORE_COLUMNS = "..."
 
