@@ -217,10 +217,13 @@ def _is_clean(block: bytes, values: np.ndarray, ends: np.ndarray) -> bool:
     windows = len(ends) // _WINDOW_BYTES
     if windows and not ends[: windows * _WINDOW_BYTES].reshape(windows, _WINDOW_BYTES).any(axis=1).all():
         return False
-    return block.isascii() or _is_utf8(block)
+    return is_utf8(block)
 
 
-def _is_utf8(block: bytes) -> bool:
+def is_utf8(block: bytes) -> bool:
+    """Return whether bytes are UTF-8; most are ASCII, which is quicker to see."""
+    if block.isascii():
+        return True
     try:
         block.decode()
     except UnicodeDecodeError:
@@ -235,9 +238,9 @@ def _taken_out(found: Scan, block: bytes) -> bytes:
     stops = np.concatenate((starts[1:], [len(block)]))
     spots = [match.start() for match in _LINE_BREAKER.finditer(block)]
     taken = set((np.searchsorted(starts, spots, side="right") - 1).tolist())
-    if not _is_utf8(block):
+    if not is_utf8(block):
         bounds = enumerate(zip(starts.tolist(), stops.tolist(), strict=True))
-        taken |= {i for i, (start, stop) in bounds if not _is_utf8(block[start:stop])}
+        taken |= {i for i, (start, stop) in bounds if not is_utf8(block[start:stop])}
     taken |= set(np.flatnonzero(stops - starts > MAX_LINE_BYTES + len(b"\r\n")).tolist())
     pieces = []
     kept_from = 0

@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from logtool.records.recipes.blocks import blocks_of
+from logtool.records.scan import is_utf8
 from logtool.records.sources import Text
 
 if TYPE_CHECKING:
@@ -57,11 +58,11 @@ def prepare(block: bytes, encoding: str) -> Prepared:
         ends = np.append(ends, len(block))
     bad = np.zeros(len(ends), bool)
     kept = block
-    if (encoding == "utf-8" and not _is_utf8(block)) or (encoding != "utf-8" and _REPLACED in block):
+    if (encoding == "utf-8" and not is_utf8(block)) or (encoding != "utf-8" and _REPLACED in block):
         starts = [0, *ends[:-1].tolist()]
         lines = [block[start:stop] for start, stop in zip(starts, ends.tolist(), strict=True)]
         for i, line in enumerate(lines):
-            if not _is_utf8(line) if encoding == "utf-8" else _REPLACED in line:
+            if not is_utf8(line) if encoding == "utf-8" else _REPLACED in line:
                 bad[i] = True
                 lines[i] = b"?\n"
         kept = b"".join(lines)
@@ -75,13 +76,3 @@ def prepare(block: bytes, encoding: str) -> Prepared:
     allowed = kept.count(b"\n") + kept.count(b"\t")
     has_control = bool(np.count_nonzero(values < ord(" ")) > allowed) or b"\x7f" in kept or _C1_LEAD in kept
     return Prepared(block, len(ends), pa.Table.from_batches(batches), has_return, has_return or has_control)
-
-
-def _is_utf8(block: bytes) -> bool:
-    if block.isascii():
-        return True
-    try:
-        block.decode()
-    except UnicodeDecodeError:
-        return False
-    return True
